@@ -1,0 +1,5 @@
+"""`python -m filtercheck`."""
+
+from filtercheck.cli import run
+
+run()

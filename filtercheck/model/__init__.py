@@ -1,0 +1,1 @@
+"""Plain data that the rooms hand to one another."""

@@ -1,0 +1,95 @@
+"""Findings, verdicts, and the only place that decides."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from enum import Enum
+from math import inf, log10
+
+from filtercheck.errors import InputError
+from filtercheck.model.part import Part
+from filtercheck.position import Position
+
+
+class Outcome(Enum):
+    """Three outcomes, and doubt is never success."""
+
+    PASS = "pass"  # noqa: S105  (a verdict, not a password)
+    FAIL = "fail"
+    UNDECIDED = "undecided"
+
+
+@dataclass(frozen=True)
+class Finding:
+    """The closest approach to one limit; a negative margin is beyond it."""
+
+    subject: str  # "gain", "centre frequency", ...
+    sense: str  # "at least" or "at most"
+    limit: float  # in the quantity's unit, at the place of the closest approach
+    value: float
+    quantity: str  # of limit and value, a key of QUANTITIES
+    certain: float  # margin that every combination keeps
+    reached: float  # margin of the worst combination found
+    margin_quantity: str  # "level" [dB] or "percentage" (of the limit)
+    freq_hz: float | None  # where; None where the value is a frequency itself, or has none
+    note: str = ""  # what the value is measured from, or why there is none
+
+    @property
+    def tightness_db(self) -> float:
+        """The margin as a ratio in dB, so that margins of all kinds can be put in order."""
+        if self.margin_quantity == "level":
+            return self.reached
+        return 20.0 * log10(1.0 + self.reached) if self.reached > -1.0 else -inf
+
+
+@dataclass(frozen=True)
+class Verdict:
+    """The judgement of one requirement on one filter."""
+
+    filter: str
+    requirement: str
+    kind: str
+    output: str
+    verify: str
+    outcome: Outcome
+    findings: tuple[Finding, ...]  # the tightest first
+    reason: str  # why it fails or is undecided whatever the findings; else empty
+    at: Position
+
+
+@dataclass(frozen=True)
+class Judged:
+    """One filter with all its verdicts and the part values they hold for."""
+
+    name: str
+    title: str
+    file: str
+    sha256: str
+    parts: tuple[Part, ...]
+    verdicts: tuple[Verdict, ...]
+
+
+@dataclass(frozen=True)
+class Run:
+    """All that one invocation found, in file order."""
+
+    board: str  # the board's name, empty where there is no board file
+    filters: tuple[Judged, ...]
+    faults: tuple[InputError, ...]  # what could not be judged
+
+    @property
+    def verdicts(self) -> tuple[Verdict, ...]:
+        return tuple(verdict for judged in self.filters for verdict in judged.verdicts)
+
+
+def decide(findings: Sequence[Finding]) -> Outcome:
+    """Pass needs proof, fail needs a counterexample; anything else is undecided.
+
+    NaN compares false both ways, so a NaN margin is undecided, never a pass.
+    """
+    if any(finding.reached < 0 for finding in findings):
+        return Outcome.FAIL
+    if findings and all(finding.certain >= 0 for finding in findings):
+        return Outcome.PASS
+    return Outcome.UNDECIDED

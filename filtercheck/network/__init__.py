@@ -1,0 +1,1 @@
+"""From elements and nodes to network functions, exact in the part values."""

@@ -1,0 +1,93 @@
+"""A board's files -> Run: the only place where reading and computing meet."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+from filtercheck import check, sampling
+from filtercheck.errors import InputError, InputErrors, UsageError
+from filtercheck.model.sample import Sample
+from filtercheck.model.subject import Subject
+from filtercheck.model.verdict import Judged, Run
+from filtercheck.reading import changes, discovery
+from filtercheck.reading.filter_file import subject
+
+
+def judged(paths: Sequence[str], settings: Sequence[str] = ()) -> Run:
+    """Judge every filter that the paths stand for; what cannot be judged is a fault of the Run.
+
+    Parameters
+    ----------
+    paths : sequence of str
+        Files and folders; none for the board around the current folder.
+    settings : sequence of str
+        Values to put in the place of those in the files, such as "R4=11k5".
+
+    Raises
+    ------
+    UsageError, InputErrors
+        If the paths, the settings or a board file are wrong.
+    """
+    found = discovery.find(paths)
+    faults: list[InputError] = []
+    subjects = changes.changed(
+        _subjects(found.files, faults), [changes.change(given) for given in settings]
+    )
+    filters: list[Judged] = []
+    for one in subjects:
+        try:
+            filters.append(check.judge(one))
+        except InputErrors as errors:
+            faults.extend(errors.errors)
+    return Run(found.board, tuple(filters), InputErrors(faults).errors)
+
+
+def _subjects(files: Sequence[discovery.File], faults: list[InputError]) -> list[Subject]:
+    """Read the files; a filter whose name another file has already is a fault."""
+    named: dict[str, Subject] = {}
+    for file in files:
+        try:
+            one = subject(*discovery.content(file), file.name)
+        except InputErrors as errors:
+            faults.extend(errors.errors)
+            continue
+        if one.name in named:
+            faults.append(
+                InputError(
+                    f"the filter {one.name!r} is there twice",
+                    one.at,
+                    found=f"first at {named[one.name].at}",
+                    allowed="each filter's name once in a repository",
+                    fix="rename one of them",
+                )
+            )
+        else:
+            named[one.name] = one
+    return list(named.values())
+
+
+@dataclass(frozen=True)
+class Curves:
+    """Points of a filter's responses, and whether they mean anything."""
+
+    samples: tuple[Sample, ...]
+    stable: bool
+
+
+def curves(
+    path: str, output: str | None, freq_hz: Sequence[float], settings: Sequence[str] = ()
+) -> Curves:
+    """Compute the responses of one filter file.
+
+    Raises
+    ------
+    UsageError, InputErrors
+        If the path, the settings, the output or the file are wrong.
+    """
+    found = discovery.find([path])
+    if len(found.files) != 1:
+        raise UsageError(f"{path}: name one file, not a folder of {len(found.files)}")
+    read = subject(*discovery.content(found.files[0]), found.files[0].name)
+    (one,) = changes.changed([read], [changes.change(given) for given in settings])
+    return Curves(tuple(sampling.samples(one, output, freq_hz)), sampling.stable(one))

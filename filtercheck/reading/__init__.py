@@ -1,0 +1,1 @@
+"""Files -> model: YAML with positions, schema errors, preferred values."""

@@ -1,0 +1,144 @@
+"""Limits on a level over frequency: how they are read, and how near a curve comes to them."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+from math import inf, nan
+
+import numpy as np
+
+from filtercheck.model.requirement import Band, Mask, Requirement
+from filtercheck.network.curve import EVERYWHERE, Curve, Point
+from filtercheck.network.ratio import Real
+from filtercheck.quantities import rounded
+
+
+@dataclass(frozen=True)
+class Approach:
+    """Where a curve comes nearest to a limit, or goes farthest beyond it."""
+
+    freq_hz: float
+    gain_db: float
+    limit_db: float
+    margin_db: float
+
+
+def nearest(curve: Curve, band_hz: Band, limit_db: Mask, sense: str) -> Approach:
+    """Return the nearest approach to a limit on a band; the lowest frequency of equals.
+
+    A limit is straight in dB over the logarithm of frequency between its points, so that on
+    each stretch the distance is least where the slopes of curve and limit are equal, or at
+    an end. A distance that is no number counts as nearest.
+    """
+    sign = 1.0 if sense == "at most" else -1.0
+    best = Approach(nan, nan, nan, inf)
+    for stretch, line in _stretches(band_hz, limit_db):
+        freq_hz = curve.candidates_hz(stretch, line)
+        gain_db = curve.response.gain_db(freq_hz)
+        limit = _level_db(limit_db, freq_hz)
+        with np.errstate(invalid="ignore"):
+            margin = sign * (limit - gain_db)
+        i = int(np.argmin(margin))
+        if not margin[i] >= best.margin_db:
+            best = Approach(*(float(x[i]) for x in (freq_hz, gain_db, limit, margin)))
+    return best
+
+
+def _stretches(band_hz: Band, limit_db: Mask) -> Iterator[tuple[Band, float]]:
+    """Yield the pieces of the band on which the limit is straight, and its slope there."""
+    low, high = band_hz
+    inner = [freq for freq, _ in limit_db if low < freq < high]
+    ends = [low, *inner, high]
+    for stretch in zip(ends[:-1], ends[1:], strict=True):
+        if len(limit_db) == 1:
+            yield stretch, 0.0
+        else:
+            below, above = _level_db(limit_db, np.array(stretch))
+            yield stretch, float((above - below) / np.log(stretch[1] / stretch[0]))
+
+
+def _level_db(limit_db: Mask, freq_hz: Real) -> Real:
+    points, levels = np.array(limit_db).T
+    if len(limit_db) == 1:
+        return np.full(len(freq_hz), levels[0])
+    return np.asarray(np.interp(np.log(freq_hz), np.log(points), levels), dtype=float)
+
+
+def band(requirement: Requirement, key: str = "band") -> Band:
+    """Return the band of a requirement."""
+    return requirement.interval(key) or EVERYWHERE
+
+
+def mask(requirement: Requirement, key: str, band_hz: Band) -> Mask | None:
+    """Return a limit over a band.
+
+    Raises
+    ------
+    InputError
+        If the limit is given at several frequencies that do not span the band.
+    """
+    limit_db = requirement.mask(key)
+    if limit_db and len(limit_db) > 1:
+        first, last = limit_db[0][0], limit_db[-1][0]
+        if first <= 0.0:
+            raise requirement.error(
+                key, "a sloped limit cannot start at 0 Hz", "frequencies above 0 Hz"
+            )
+        if first > band_hz[0] or last < band_hz[1]:
+            raise requirement.error(
+                key,
+                f"the limit is given from {_hertz(first)} to {_hertz(last)} only",
+                f"points that span the band, {_hertz(band_hz[0])} to {_hertz(band_hz[1])}",
+                f"add points to `{key}`, or narrow `band`",
+            )
+    return limit_db
+
+
+def crossed(floor: Mask, ceiling: Mask, band_hz: Band) -> bool:
+    """Whether a floor lies above a ceiling somewhere on a band; both are piecewise straight,
+    so it is enough to look at their points."""
+    low, high = band_hz
+    points = [low, high, *(f for f, _ in (*floor, *ceiling) if low < f < high)]
+    if len(floor) == len(ceiling) == 1:
+        return floor[0][1] > ceiling[0][1]
+    freq_hz = np.array(points)
+    return bool((_level_db(floor, freq_hz) > _level_db(ceiling, freq_hz)).any())
+
+
+@dataclass(frozen=True)
+class Reference:
+    """What a relative limit is measured against, on the same board."""
+
+    freq_hz: float | None  # the gain there, or
+    passband_hz: Band | None  # the largest gain in there
+
+    def of(self, curve: Curve) -> Point:
+        """Return the point of reference of one board."""
+        if self.freq_hz is not None:
+            return Point(self.freq_hz, curve.gain_db(self.freq_hz))
+        return curve.highest(self.passband_hz or EVERYWHERE)
+
+
+def reference(requirement: Requirement) -> Reference:
+    """Return what a relative requirement refers to.
+
+    Raises
+    ------
+    InputError
+        If it states both a frequency and a pass band, or neither.
+    """
+    freq_hz, passband_hz = requirement.number("reference"), requirement.interval("passband")
+    if (freq_hz is None) == (passband_hz is None):
+        both = freq_hz is not None
+        raise requirement.error(
+            "reference",
+            "has two references" if both else "has no reference to measure from",
+            "either `reference` (a frequency) or `passband` (a band, whose peak counts)",
+            "delete one of them" if both else "add `reference: 100 Hz`, or `passband: [ , ]`",
+        )
+    return Reference(freq_hz, passband_hz)
+
+
+def _hertz(freq_hz: float) -> str:
+    return rounded(freq_hz, "frequency")

@@ -1,0 +1,1 @@
+"""A filter's sections or connections -> the responses at its outputs."""
