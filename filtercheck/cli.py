@@ -67,9 +67,7 @@ def _parser() -> argparse.ArgumentParser:
     commands = parser.add_subparsers(required=True, metavar="COMMAND")
 
     check = commands.add_parser("check", help="judge every filter found", allow_abbrev=False)
-    check.add_argument(
-        "paths", nargs="*", metavar="PATH", help="files or folders; the board here"
-    )
+    check.add_argument("paths", nargs="*", metavar="PATH", help="files or folders; the board here")
     _outputs(check)
     _settings(check)
     check.set_defaults(command=_check)
@@ -186,9 +184,7 @@ def _clear(targets: Sequence[Path], paths: Sequence[str]) -> None:
     if len(set(places)) < len(places):
         raise UsageError("two reports cannot be written to the same file")
     for target in places:
-        if target.name.endswith((".yaml", ".yml")) or target in [
-            Path(p).resolve() for p in paths
-        ]:
+        if target.name.endswith((".yaml", ".yml")) or target in [Path(p).resolve() for p in paths]:
             raise UsageError(f"{target.name}: a report is not written over a file under check")
 
 

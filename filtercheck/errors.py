@@ -31,9 +31,7 @@ class QuantityError(FiltercheckError):
 class NetworkError(FiltercheckError):
     """A network has no solution, or more than one."""
 
-    def __init__(
-        self, problem: str, *, culprit: str, found: str, allowed: str, fix: str
-    ) -> None:
+    def __init__(self, problem: str, *, culprit: str, found: str, allowed: str, fix: str) -> None:
         super().__init__(problem)
         self.problem = problem
         self.culprit = culprit  # the element or the node that causes it
@@ -45,9 +43,7 @@ class NetworkError(FiltercheckError):
 class InputError(FiltercheckError):
     """The files say something that cannot be accepted."""
 
-    def __init__(
-        self, problem: str, at: Position, *, found: str, allowed: str, fix: str
-    ) -> None:
+    def __init__(self, problem: str, at: Position, *, found: str, allowed: str, fix: str) -> None:
         super().__init__(problem)
         self.problem = problem
         self.at = at

@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping
 from inspect import cleandoc
-from textwrap import wrap
 from typing import Any
 
 from filtercheck import quantities
@@ -13,9 +12,8 @@ from filtercheck.errors import UsageError
 from filtercheck.model import verdict
 from filtercheck.reading.schema import schema
 from filtercheck.requirements import KINDS
-from filtercheck.wording import listed, suggestion
+from filtercheck.wording import listed, suggestion, wrapped
 
-WIDTH = 80
 FORMATS = ("filter", "board", "evidence")
 NOTATIONS = {"quantities": quantities.__doc__, "verdicts": verdict.__doc__}
 
@@ -30,10 +28,7 @@ def topics() -> str:
     }
     lines = []
     for title, names in groups.items():
-        lines += [
-            title,
-            *wrap(", ".join(names), WIDTH, initial_indent="  ", subsequent_indent="  "),
-        ]
+        lines += [title, *wrapped(", ".join(names), "  ")]
     return "\n".join(lines) + "\n"
 
 
@@ -60,7 +55,7 @@ def manual(topic: str) -> str:
 
 
 def _format(rules: Mapping[str, Any]) -> Iterator[str]:
-    yield from wrap(str(rules["description"]), WIDTH)
+    yield from wrapped(str(rules["description"]))
     yield from _keys(rules, rules, "  ")
 
 
@@ -73,9 +68,10 @@ def _keys(rule: Mapping[str, Any], whole: Mapping[str, Any], indent: str) -> Ite
             continue
         must = "required" if key in required else "optional"
         text = f"{key} ({must}): {inner.get('description', '')}"
-        if "enum" in inner:
-            text += f" One of {listed(map(str, inner['enum']))}."
-        yield from wrap(text, WIDTH, initial_indent=indent, subsequent_indent=f"{indent}    ")
+        words = [inner["const"]] if "const" in inner else inner.get("enum", ())
+        if words:
+            text += f" {'One of ' if len(words) > 1 else ''}{listed(map(str, words))}."
+        yield from wrapped(text, indent)
         for below in (inner, inner.get("items"), inner.get("additionalProperties")):
             if isinstance(below, Mapping):
                 yield from _keys(_resolved(below, whole), whole, f"{indent}    ")

@@ -12,8 +12,8 @@ from fractions import Fraction
 from functools import cache
 from math import isfinite
 
-_E24 = (10, 11, 12, 13, 15, 16, 18, 20, 22, 24, 27, 30)
-_E24 += (33, 36, 39, 43, 47, 51, 56, 62, 68, 75, 82, 91)
+_DECADE = "10 11 12 13 15 16 18 20 22 24 27 30 33 36 39 43 47 51 56 62 68 75 82 91"
+_E24 = tuple(int(member) for member in _DECADE.split())
 SERIES = ("E3", "E6", "E12", "E24", "E48", "E96", "E192")
 
 

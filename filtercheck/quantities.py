@@ -1,6 +1,7 @@
 """Quantities as text: "4k7", "2.2 kΩ", "15 nF", "-0.5 dB" <-> float.
 
-A quantity is a number with an optional SI prefix and unit, with or without a space:
+A quantity is a number with an optional SI prefix and unit, with or without a
+space:
 
     4700   4.7e3   4.7k   4.7 kΩ   4.7 kohm   15 nF   10MHz   22 µH   -0.5 dB   1 %   50 ppm/K
 
@@ -8,10 +9,11 @@ or a code of IEC 60062, in which a letter stands for the decimal point:
 
     4k7 = 4.7 kΩ   R47 = 0.47 Ω   0R1 = 0.1 Ω   2u2 = 2.2 µF   4n7 = 4.7 nF
 
-`m` is always milli and `M` always mega, in prefixes and codes; neither is ever guessed. `k`
-may be written `K`, and micro `u`, `µ` or `μ`. Levels (dB), percentages and temperature
-coefficients need their unit, since a bare number could mean something else. An open-loop
-gain is given in dB, or as a ratio: 110 dB, 300000, 300 V/mV.
+`m` is always milli and `M` always mega, in prefixes and codes; neither is ever
+guessed. `k` may be written `K`, and micro `u`, `µ` or `μ`. Levels (dB),
+percentages and temperature coefficients need their unit, since a bare number
+could mean something else. An open-loop gain is given in dB, or as a ratio: 110
+dB, 300000, 300 V/mV.
 
 Source: IEC 60062:2016 (the codes, from memory; examples in tests/reference).
 """

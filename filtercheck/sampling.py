@@ -30,9 +30,7 @@ def samples(subject: Subject, output: str | None, freq_hz: Sequence[float]) -> I
         If there is no such output.
     """
     if output is not None and output not in subject.outputs:
-        raise UsageError(
-            f"there is no output {output!r}; write one of {listed(subject.outputs)}"
-        )
+        raise UsageError(f"there is no output {output!r}; write one of {listed(subject.outputs)}")
     reached, _ = responses(subject, wired(subject))
     at = np.array(freq_hz, dtype=float)
     for name, response in reached.items():

@@ -10,6 +10,9 @@ from __future__ import annotations
 import unicodedata
 from collections.abc import Iterable
 from difflib import get_close_matches
+from textwrap import wrap
+
+WIDTH = 80  # columns of a terminal
 
 # Control, format (bidirectional marks are among these), surrogate, private and unassigned
 # characters, and the two separators that some readers take for a line end.
@@ -28,6 +31,17 @@ def _code(character: str) -> str:
     if number < 0x100:
         return f"\\x{number:02x}"
     return f"\\u{number:04x}" if number < 0x10000 else f"\\U{number:08x}"
+
+
+def wrapped(text: str, indent: str = "") -> list[str]:
+    """Return the text in lines of at most `WIDTH`; those after the first a little deeper."""
+    return wrap(
+        text,
+        WIDTH,
+        initial_indent=indent,
+        subsequent_indent=f"{indent}    " if indent else "",
+        break_on_hyphens=False,
+    )
 
 
 def suggestion(word: str, allowed: Iterable[str]) -> str | None:

@@ -12,7 +12,8 @@
 
     fit: {Cin: , Cf: , C2: , R1: , R2: , A: }
 
-Rb only balances the bias current; where it is left out, that input is grounded.
+Rb only balances the bias current; where it is left out, that input is
+grounded.
 
 Outputs: highpass.
 

@@ -12,7 +12,8 @@
 
     fit: {Rin: , Rf: , R2: , C1: , C2: , A: }
 
-Rb only balances the bias current; where it is left out, that input is grounded.
+Rb only balances the bias current; where it is left out, that input is
+grounded.
 
 Outputs: lowpass.
 

@@ -8,7 +8,8 @@
 
     fit: {C: , Rin: , Rf: , A: }
 
-Rb only balances the bias current; where it is left out, that input is grounded.
+Rb only balances the bias current; where it is left out, that input is
+grounded.
 
 Outputs: highpass.
 

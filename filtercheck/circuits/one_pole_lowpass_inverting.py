@@ -10,7 +10,8 @@
 
     fit: {Rin: , Rf: , C: , A: }
 
-Rb only balances the bias current; where it is left out, that input is grounded.
+Rb only balances the bias current; where it is left out, that input is
+grounded.
 
 Outputs: lowpass.
 

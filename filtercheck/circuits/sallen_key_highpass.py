@@ -23,8 +23,9 @@ With an ideal op-amp:
     highpass = K s^2 R1 R2 C1 C2
                / (1 + s (R1 (C1 + C2) + R2 C2 (1 - K)) + s^2 R1 R2 C1 C2)
 
-Source: Sallen and Key, "A practical method of designing RC active filters", IRE Trans. Circuit
-Theory, vol. CT-2, no. 1, pp. 74-85, 1955 (from memory); the function follows from the drawing.
+Source: Sallen and Key, "A practical method of designing RC active filters",
+IRE Trans. Circuit Theory, vol. CT-2, no. 1, pp. 74-85, 1955 (from memory); the
+function follows from the drawing.
 """
 
 from __future__ import annotations

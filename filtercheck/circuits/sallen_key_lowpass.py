@@ -22,8 +22,9 @@ With an ideal op-amp:
 
     lowpass = K / (1 + s (C2 (R1 + R2) + R1 C1 (1 - K)) + s^2 R1 R2 C1 C2)
 
-Source: Sallen and Key, "A practical method of designing RC active filters", IRE Trans. Circuit
-Theory, vol. CT-2, no. 1, pp. 74-85, 1955 (from memory); the function follows from the drawing.
+Source: Sallen and Key, "A practical method of designing RC active filters",
+IRE Trans. Circuit Theory, vol. CT-2, no. 1, pp. 74-85, 1955 (from memory); the
+function follows from the drawing.
 """
 
 from __future__ import annotations

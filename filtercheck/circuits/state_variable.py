@@ -17,8 +17,9 @@
 
     fit: {Rin: , Rhp: , Rlp: , Rbp: , Rg: , R1: , C1: , R2: , C2: , A0: , A1: , A2: }
 
-Rbp is the damping resistor, from the band-pass output. Rb1 and Rb2 only balance the bias
-currents of the integrators; where they are left out, those inputs are grounded.
+Rbp is the damping resistor, from the band-pass output. Rb1 and Rb2 only
+balance the bias currents of the integrators; where they are left out, those
+inputs are grounded.
 
 Outputs: highpass, bandpass, lowpass.
 
@@ -29,12 +30,14 @@ With ideal op-amps, w1 = 1/(R1 C1), w2 = 1/(R2 C2) and d = Rg/(Rg + Rbp):
     bandpass = +(Rhp/Rin) s w1 / D
     lowpass  = -(Rhp/Rin) w1 w2 / D
 
-With all resistors 1 ohm and capacitors 1 F but Rbp = 3 Q - 1: w0 = 1, the quality factor
-is Q, the gain is -1 (low-pass and high-pass) and Q (band-pass, at the centre).
+With all resistors 1 ohm and capacitors 1 F but Rbp = 3 Q - 1: w0 = 1, the
+quality factor is Q, the gain is -1 (low-pass and high-pass) and Q (band-pass,
+at the centre).
 
-Source: Kerwin, Huelsman and Newcomb, "State-variable synthesis for insensitive integrated
-circuit transfer functions", IEEE J. Solid-State Circuits, vol. SC-2, no. 3, pp. 87-92, 1967
-(from memory); the functions follow from the drawing.
+Source: Kerwin, Huelsman and Newcomb, "State-variable synthesis for insensitive
+integrated circuit transfer functions", IEEE J. Solid-State Circuits, vol.
+SC-2, no. 3, pp. 87-92, 1967 (from memory); the functions follow from the
+drawing.
 """
 
 from __future__ import annotations

@@ -1,4 +1,8 @@
-"""The example board: the bearing-vibration logger of a bridge, all names and parts invented."""
+"""The example board, shipped with the program: an invented logger on a bridge.
+
+It measures the vibration of a bearing and the strain of the deck; all names and parts are
+invented.
+"""
 
 from __future__ import annotations
 
@@ -6,20 +10,53 @@ from importlib.resources import files
 from importlib.resources.abc import Traversable
 from pathlib import Path
 
-# The one edit that breaks a requirement: the file, what stands there and what to write.
-SPOILED = "filters/band-splitter.filter.yaml"
-GOOD, BAD = "R4: {resistance: 28k7,", "R4: {resistance: 24k9,"
+from filtercheck.errors import UsageError
+
+# The one edit that breaks a requirement: in this file, this value of a damping resistor.
+SPOILED = "filters/vibration-antialias.filter.yaml"
+GOOD, BAD = "38k3", "48k7"
 
 
 def write(folder: Path) -> None:
-    """Write the board into a folder; files that are there already are written anew."""
-    _copy(files(__package__) / "board", folder)
+    """Write the board's files into a folder; those that are there already are left alone.
+
+    Raises
+    ------
+    UsageError
+        If a file is there with other content, which would be lost, or cannot be written.
+    """
+    board = dict(_files(files(__package__) / "board", Path()))
+    for inside, text in board.items():
+        place = folder / inside
+        if place.exists() and place.read_text("utf-8") != text:
+            raise UsageError(f"{place} is there already and differs; name another folder")
+    try:
+        for inside, text in board.items():
+            (folder / inside).parent.mkdir(parents=True, exist_ok=True)
+            (folder / inside).write_text(text, "utf-8")
+    except OSError as error:
+        raise UsageError(f"{folder}: cannot be written, {error.strerror}") from error
 
 
-def _copy(source: Traversable, target: Path) -> None:
-    target.mkdir(parents=True, exist_ok=True)
-    for entry in sorted(source.iterdir(), key=lambda e: e.name):
+def guide(folder: str) -> str:
+    """Return what to look at, and how to see a requirement break."""
+    return f"""\
+The board is in {folder}, the results in {folder}/results:
+  junit.xml       for the CI system
+  evidence.json   all figures, with the hash of every file
+
+To see a requirement break, change one damping resistor and check again:
+  in {folder}/{SPOILED}
+  change R312 from {GOOD} to {BAD}, then run
+  filtercheck check {folder}
+"""
+
+
+def _files(source: Traversable, inside: Path) -> list[tuple[Path, str]]:
+    found: list[tuple[Path, str]] = []
+    for entry in sorted(source.iterdir(), key=lambda entry: entry.name):
         if entry.is_dir():
-            _copy(entry, target / entry.name)
+            found += _files(entry, inside / entry.name)
         elif entry.name.endswith(".yaml"):
-            (target / entry.name).write_text(entry.read_text("utf-8"), "utf-8")
+            found.append((inside / entry.name, entry.read_text("utf-8")))
+    return found

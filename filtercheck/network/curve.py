@@ -77,9 +77,7 @@ class Curve:
             below = self._toward(below, above, level_db, fallen=True)
         return self._bisected(above, below, level_db)
 
-    def _toward(
-        self, end_hz: float, start_hz: float, level_db: float, *, fallen: bool
-    ) -> float:
+    def _toward(self, end_hz: float, start_hz: float, level_db: float, *, fallen: bool) -> float:
         """Return a frequency between `start_hz` and an end of the axis, on the end's side of
         the level; start from 1 Hz where both are ends."""
         step = 1e-3 if end_hz == 0.0 else 1e3

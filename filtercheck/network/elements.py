@@ -19,9 +19,7 @@ class Symbol:
     """One number of an element, to which every network function is affine."""
 
     element: str
-    kind: (
-        str  # "conductance", "capacitance", "inductance", "inverse gain" or "inverse bandwidth"
-    )
+    kind: str  # "conductance", "capacitance", "inductance", "inverse gain" or "inverse bandwidth"
 
     @property
     def dynamic(self) -> bool:

@@ -36,9 +36,7 @@ from filtercheck.network.elements import (
 from filtercheck.network.polynomial import Polynomial
 
 Terms = dict[int, int]  # mask of symbols -> integer coefficient
-Entry = list[
-    tuple[int, int]
-]  # the terms of one matrix entry: (mask with one bit or none, sign)
+Entry = list[tuple[int, int]]  # the terms of one matrix entry: (mask with one bit or none, sign)
 Rows = list[dict[int, Entry]]  # for each equation its entries by column
 
 

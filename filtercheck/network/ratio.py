@@ -47,9 +47,7 @@ class Ratio:
         return _roots(self.denominator) * self.omega0
 
 
-def ratio(
-    numerator: Polynomial, denominator: Polynomial, values: Mapping[Symbol, float]
-) -> Ratio:
+def ratio(numerator: Polynomial, denominator: Polynomial, values: Mapping[Symbol, float]) -> Ratio:
     """Return N/D at these part values.
 
     Parameters

@@ -79,9 +79,7 @@ def _not_one(one: Change, fitting: Sequence[Subject], subjects: Sequence[Subject
 def _set(part: Part, one: Change) -> Part:
     if isinstance(part, Passive):
         if one.figure:
-            raise UsageError(
-                f"--set {one.given}: {one.designator} has one value and no figures"
-            )
+            raise UsageError(f"--set {one.given}: {one.designator} has one value and no figures")
         value = _positive(one, part.quantity)
         return replace(part, value=value, ideal=None, series=None, changed=True)
     return _set_figure(part, one)
@@ -100,9 +98,7 @@ def _set_figure(part: OpAmp, one: Change) -> OpAmp:
     settings: Mapping[str, Figure | None] = {one.figure: figure}
     gain_bandwidth = settings.get("gain_bandwidth", part.gain_bandwidth)
     open_loop_gain = settings.get("open_loop_gain", part.open_loop_gain)
-    return replace(
-        part, gain_bandwidth=gain_bandwidth, open_loop_gain=open_loop_gain, changed=True
-    )
+    return replace(part, gain_bandwidth=gain_bandwidth, open_loop_gain=open_loop_gain, changed=True)
 
 
 def _positive(one: Change, quantity: str) -> float:

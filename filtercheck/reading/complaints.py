@@ -34,9 +34,7 @@ def complaints(error: ValidationError, source: Source) -> Iterator[InputError]:
         case "quantity":
             yield _misread(error, at)
         case "additionalProperties":
-            yield from _unknown_keys(
-                error.instance, list(rule.get("properties", ())), source, path
-            )
+            yield from _unknown_keys(error.instance, list(rule.get("properties", ())), source, path)
         case "required":
             yield from _missing_keys(error, rule, source, path)
         case "enum":

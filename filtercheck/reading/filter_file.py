@@ -57,9 +57,7 @@ def _not_one_circuit(source: Source, both: bool) -> InputError:
         source.at("connect") if both else source.values[()],
         found="both `sections` and `connect`" if both else "neither `sections` nor `connect`",
         allowed="`sections` of known circuits, or `connect` with the nodes of every part",
-        fix="delete one of them"
-        if both
-        else "add `sections:`, see `filtercheck explain filter`",
+        fix="delete one of them" if both else "add `sections:`, see `filtercheck explain filter`",
     )
 
 
@@ -70,9 +68,7 @@ def _sections(source: Source) -> Iterator[Section]:
         yield Section(
             name=_name(source, *path, "name").word,
             circuit=_name(source, *path, "circuit"),
-            fit={
-                role: _name(source, *path, "fit", role) for role in _keys(source, *path, "fit")
-            },
+            fit={role: _name(source, *path, "fit", role) for role in _keys(source, *path, "fit")},
             drives=_name(source, *drives) if drives in source.values else None,
             at=source.values[(*path, "name")],
         )
@@ -116,9 +112,7 @@ def _data(source: Source, *path: str | int) -> Data | Mapping[str, Data]:
 
 
 def _keys(source: Source, *path: str | int) -> list[str]:
-    return (
-        list(cast("Mapping[str, Data]", _data(source, *path))) if path in source.values else []
-    )
+    return list(cast("Mapping[str, Data]", _data(source, *path))) if path in source.values else []
 
 
 def _items(source: Source, *path: str | int) -> list[Data]:

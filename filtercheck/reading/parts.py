@@ -24,9 +24,7 @@ Keys = Mapping[str, Data]
 def parts(source: Source, faults: list[InputError]) -> dict[str, Part]:
     """Return the parts by designator, of a file that has passed its schema; add what is wrong."""
     found: dict[str, Part] = {}
-    for designator, data in cast(
-        "Mapping[str, Keys]", cast("Keys", source.data)["parts"]
-    ).items():
+    for designator, data in cast("Mapping[str, Keys]", cast("Keys", source.data)["parts"]).items():
         try:
             found[designator] = _part(designator, data, source)
         except InputError as error:

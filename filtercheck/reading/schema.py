@@ -68,9 +68,7 @@ def _validator(name: str) -> Any:
     return extend(Draft7Validator, {"quantity": _quantity})(schema(name))  # type: ignore[no-untyped-call]
 
 
-def _quantity(
-    _: object, quantity: str, text: object, rule: Schema
-) -> Iterator[ValidationError]:
+def _quantity(_: object, quantity: str, text: object, rule: Schema) -> Iterator[ValidationError]:
     """Check that a text is a quantity; the error carries what to say about it."""
     words = rule.get("words", ())
     if not isinstance(text, str) or text in words:

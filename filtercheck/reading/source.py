@@ -7,6 +7,7 @@ at its own parent, or grow without bound), no merge keys, bounded size and depth
 
 from __future__ import annotations
 
+import re
 from collections.abc import Iterator
 from dataclasses import dataclass
 from typing import Union
@@ -19,11 +20,18 @@ from filtercheck.position import Position
 LARGEST = 1_000_000  # bytes
 DEEPEST = 64
 
-Data = Union[str, list["Data"], dict[str, "Data"]]
+Data = Union[str, list["Data"], dict[str, "Data"]]  # noqa: UP007  (strings inside)
 Path = tuple[str | int, ...]
 
 # The parser built on libyaml is several times as fast, with the same marks.
 _LOADER = getattr(yaml, "CSafeLoader", yaml.SafeLoader)
+
+
+# What YAML 1.1 takes for the end of a line, and the characters that it forbids.
+_LINE_END = re.compile("\r\n|[\n\r\x85\u2028\u2029]")
+_FORBIDDEN = re.compile(
+    "[^\t\n\r\x20-\x7e\x85\xa0-\ud7ff\ue000-\ufefe\uff00-\ufffd\U00010000-\U0010ffff]"
+)
 
 
 @dataclass(frozen=True)
@@ -49,15 +57,27 @@ def read(text: str, file: str) -> Source:
         If the text is no YAML, or uses what is refused here.
     """
     reader = _Reader(text, file)
+    if forbidden := _FORBIDDEN.search(text):
+        raise InputErrors([_unreadable(text, file, forbidden.start())])
     try:
         data = reader.document()
     except yaml.MarkedYAMLError as error:
         raise InputErrors([*reader.errors, reader.syntax(error)]) from error
-    except yaml.reader.ReaderError as error:
-        raise InputErrors([reader.unreadable(error)]) from error
     if reader.errors:
         raise InputErrors(reader.errors)
     return Source(file, data, reader.values, reader.keys)
+
+
+def _unreadable(text: str, file: str, at: int) -> InputError:
+    before = _LINE_END.split(text[:at])
+    line = _LINE_END.split(text)[len(before) - 1]
+    return InputError(
+        "a character is not allowed in YAML",
+        Position(file, len(before), len(before[-1]) + 1, 1, line),
+        found=text[at],
+        allowed="text, tabs and line ends",
+        fix="delete the character",
+    )
 
 
 class _Reader:
@@ -66,11 +86,12 @@ class _Reader:
 
     def __init__(self, text: str, file: str) -> None:
         self.file = file
-        self.lines = text.splitlines() or [""]
+        self.lines = _LINE_END.split(text)
         self.events: Iterator[yaml.Event] = yaml.parse(text, Loader=_LOADER)
         self.values: dict[Path, Position] = {}
         self.keys: dict[Path, Position] = {}
         self.errors: list[InputError] = []
+        self.last: yaml.Event | None = None  # where the collection just read ends
 
     def document(self) -> Data:
         data: Data = {}
@@ -79,9 +100,7 @@ class _Reader:
             if isinstance(event, yaml.DocumentStartEvent):
                 seen += 1
                 if seen > 1:
-                    self.refuse(
-                        event, "a second document", "one document in a file", "split it"
-                    )
+                    self.refuse(event, "a second document", "one document in a file", "split it")
                     return data
                 data = self.node(next(self.events), ())
         if not seen:
@@ -101,16 +120,21 @@ class _Reader:
         self.check(event)
         if isinstance(event, yaml.ScalarEvent):
             return str(event.value)
-        if isinstance(event, yaml.SequenceStartEvent):
-            return self.sequence(path)
-        if isinstance(event, yaml.MappingStartEvent):
-            return self.mapping(path)
-        return ""  # an alias, refused already
+        if isinstance(event, yaml.AliasEvent):
+            return ""  # refused already
+        data = (
+            self.sequence(path)
+            if isinstance(event, yaml.SequenceStartEvent)
+            else self.mapping(path)
+        )
+        self.values[path] = self.position(event, self.last)
+        return data
 
     def sequence(self, path: Path) -> Data:
         items: list[Data] = []
         while not isinstance(event := next(self.events), yaml.SequenceEndEvent):
             items.append(self.node(event, (*path, len(items))))
+        self.last = event
         return items
 
     def mapping(self, path: Path) -> Data:
@@ -131,6 +155,7 @@ class _Reader:
                 )
             self.keys.setdefault(here, at)
             members[key] = self.node(next(self.events), here)
+        self.last = event
         return members
 
     def key(self, event: yaml.Event, path: Path) -> str:
@@ -158,13 +183,15 @@ class _Reader:
             InputError(f"{what} is not allowed", at, found=found, allowed=allowed, fix=fix)
         )
 
-    def position(self, event: yaml.Event) -> Position:
-        start, end = event.start_mark, event.end_mark
+    def position(self, event: yaml.Event, last: yaml.Event | None = None) -> Position:
+        """Return where an event, or all from one to the last, stands on its first line."""
+        start, end = event.start_mark, (last or event).end_mark
+        if start is None or end is None:
+            raise TypeError("the parser gave an event without its place")
         text = self.line(start.line)
-        last = end.column if end.line == start.line else len(text)
-        return Position(
-            self.file, start.line + 1, start.column + 1, max(1, last - start.column), text
-        )
+        stop = end.column if end.line == start.line else len(text)
+        width = max(1, stop - start.column)
+        return Position(self.file, start.line + 1, start.column + 1, width, text)
 
     def line(self, index: int) -> str:
         return self.lines[index] if index < len(self.lines) else ""
@@ -179,16 +206,4 @@ class _Reader:
             found=found or "something else",
             allowed="YAML: `key: value`, [a, b] and {a: b}",
             fix="mend the line; look for a missing space after a colon, a bracket or a quote",
-        )
-
-    def unreadable(self, error: yaml.reader.ReaderError) -> InputError:
-        before = "\n".join(self.lines)[: error.position]
-        line = before.count("\n")
-        column = error.position - (before.rfind("\n") + 1)
-        return InputError(
-            "a character is not allowed in YAML",
-            Position(self.file, line + 1, column + 1, 1, self.line(line)),
-            found=f"character number {error.character}",
-            allowed="text, tabs and line ends",
-            fix="delete the character",
         )

@@ -7,17 +7,15 @@ the figures rest on.
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator
-from textwrap import wrap
 
 from filtercheck.model.part import Passive
 from filtercheck.model.verdict import Judged, Outcome, Run, Verdict
 from filtercheck.quantities import rounded
 from filtercheck.report import sentences
-from filtercheck.wording import visible
+from filtercheck.wording import visible, wrapped
 
-WIDTH = 80
 HEADINGS = ("verdict", "margin", "closest at", "value", "requirement")
-WIDTHS = (9, 10, 10, 10, 37)  # with a space between two columns these are 80
+WIDTHS = (9, 11, 10, 11, 35)  # with a space between two columns these are 80
 
 
 def render(run: Run) -> str:
@@ -28,10 +26,10 @@ def render(run: Run) -> str:
     for verdict in sentences.worst_first(run):
         if verdict.outcome is not Outcome.PASS:
             lines += ["", *_details(verdict)]
-    basis = [line for judged in run.filters for line in _basis(judged)]
+    basis = [*_verified(run), *(line for judged in run.filters for line in _basis(judged))]
     if basis:
         lines += ["", "What this rests on", *basis]
-    lines += ["", *wrap(sentences.CAUTION, WIDTH)]
+    lines += ["", *wrapped(sentences.CAUTION)]
     return "\n".join(lines) + "\n"
 
 
@@ -74,35 +72,28 @@ def _line(verdict: Verdict) -> str:
 
 def _details(verdict: Verdict) -> Iterator[str]:
     outcome = sentences.outcome(verdict)
-    yield from wrap(f"{outcome} {verdict.filter} {verdict.requirement}", WIDTH)
+    yield from wrapped(f"{outcome} {verdict.filter} {verdict.requirement}")
     says = [f"{verdict.kind} of {verdict.output}: {sentences.summary(verdict)}"]
     says += [sentences.said(one) for one in verdict.findings[1:] if one.reached < 0.0]
     for text in says:
-        yield from wrap(text, WIDTH, initial_indent="  ", subsequent_indent="    ")
-    yield from wrap(
-        f"at {visible(str(verdict.at))}",
-        WIDTH,
-        initial_indent="  ",
-        subsequent_indent="    ",
-        break_on_hyphens=False,
-    )
+        yield from wrapped(text, "  ")
+    yield from wrapped(f"at {visible(str(verdict.at))}", "  ")
+
+
+def _verified(run: Run) -> Iterator[str]:
+    """Yield what each way to verify that was used does, and does not, consider."""
+    if any(verdict.verify == "nominal" for verdict in run.verdicts):
+        yield "  nominal: the part values as fitted and no others; tolerances are not considered"
 
 
 def _basis(judged: Judged) -> Iterator[str]:
     """Yield what is assumed of one filter's parts, wrapped under its name."""
     notes = list(_notes(judged))
     if notes:
-        yield from wrap(
-            f"{judged.name}: {'; '.join(notes)}",
-            WIDTH,
-            initial_indent="  ",
-            subsequent_indent="    ",
-        )
+        yield from wrapped(f"{judged.name}: {'; '.join(notes)}", "  ")
 
 
 def _notes(judged: Judged) -> Iterator[str]:
-    if any(verdict.verify == "nominal" for verdict in judged.verdicts):
-        yield "nominal, the part values as fitted and no others"
     passives = [part for part in judged.parts if isinstance(part, Passive)]
     for part in passives:
         if part.ideal is not None:
@@ -111,15 +102,13 @@ def _notes(judged: Judged) -> Iterator[str]:
                 f"fitted {rounded(part.value, part.quantity, digits=6)} ({part.series}, "
                 f"{_signed(part.value / part.ideal - 1.0)})"
             )
-    for part in judged.parts:
-        if part.changed:
-            yield f"{sentences.fitted(part)} by --set, not as in the file"
+    changed = [part for part in judged.parts if part.changed]
+    yield from (f"{sentences.fitted(part)} by --set, not as in the file" for part in changed)
     free = [part.designator for part in passives if not part.series and not part.changed]
     if free:
         yield f"not checked against any series: {', '.join(free)}"
-    for part in judged.parts:
-        if ideal := sentences.ideal_figures(part):
-            yield f"{part.designator} with ideal {ideal}"
+    ideal = {part.designator: sentences.ideal_figures(part) for part in judged.parts}
+    yield from (f"{name} with ideal {what}" for name, what in ideal.items() if what)
 
 
 def _signed(fraction: float) -> str:

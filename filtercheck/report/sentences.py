@@ -51,7 +51,7 @@ def value(finding: Finding) -> str:
 
 def margin(finding: Finding) -> str:
     """Return the margin with its sign: '-0.123 dB', '+2.1 %'."""
-    text = rounded(finding.reached, finding.margin_quantity)
+    text = rounded(finding.reached, finding.margin_quantity, digits=3)
     return f"+{text}" if finding.reached > 0.0 else text
 
 

@@ -1,4 +1,5 @@
-"""Attenuate a band by at least so much, measured from the filter's own gain elsewhere.
+"""Attenuate a band by at least so much, measured from the filter's own gain
+elsewhere.
 
     requirements:
       VIB-2:
@@ -9,13 +10,14 @@
         reference: 100 Hz
         verify: nominal
 
-The attenuation is the gain at the reference less the gain in the band, both of the same
-board. In the place of `reference`, a pass band may be stated: its largest gain counts.
+The attenuation is the gain at the reference less the gain in the band, both of
+the same board. In the place of `reference`, a pass band may be stated: its
+largest gain counts.
 
         passband: [10 Hz, 800 Hz]
 
-`min` may be given at several frequencies, and is straight between them in dB over the
-logarithm of frequency: `min: {4 kHz: 24 dB, 16 kHz: 60 dB}`.
+`min` may be given at several frequencies, and is straight between them in dB
+over the logarithm of frequency: `min: {4 kHz: 24 dB, 16 kHz: 60 dB}`.
 """
 
 from __future__ import annotations

@@ -1,4 +1,5 @@
-"""Keep the frequency where the response has fallen by a stated amount between two limits.
+"""Keep the frequency where the response has fallen by a stated amount between two
+limits.
 
     requirements:
       VIB-4:
@@ -10,10 +11,11 @@
         within: [950 Hz, 1050 Hz]
         verify: nominal
 
-The corner frequency is the first one, going up from the reference (`side: above`, for a
-low-pass) or down from it (`side: below`, for a high-pass), at which the gain lies by `fall`
-below the gain at the reference. In the place of `reference`, a pass band may be stated: the
-search starts at its largest gain, and that is what the fall is measured from.
+The corner frequency is the first one, going up from the reference (`side:
+above`, for a low-pass) or down from it (`side: below`, for a high-pass), at
+which the gain lies by `fall` below the gain at the reference. In the place of
+`reference`, a pass band may be stated: the search starts at its largest gain,
+and that is what the fall is measured from.
 
         passband: [10 Hz, 900 Hz]
 

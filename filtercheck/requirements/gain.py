@@ -9,14 +9,15 @@
         max: 0.3 dB
         verify: nominal
 
-Either limit may be left out. A limit that changes over the band is given at several
-frequencies, and is straight between them in dB over the logarithm of frequency:
+Either limit may be left out. A limit that changes over the band is given at
+several frequencies, and is straight between them in dB over the logarithm of
+frequency:
 
         band: [2 kHz, 50 kHz]
         max: {2 kHz: -12 dB, 10 kHz: -60 dB, 50 kHz: -60 dB}
 
-The limits hold at every frequency of the band, its ends included. A band may start at 0 Hz,
-and `[2 kHz, up]` has no upper end.
+The limits hold at every frequency of the band, its ends included. A band may
+start at 0 Hz, and `[2 kHz, up]` has no upper end.
 """
 
 from __future__ import annotations
@@ -68,13 +69,9 @@ def read(requirement: Requirement) -> Gain:
     floor = levels.mask(requirement, "min", band_hz)
     ceiling = levels.mask(requirement, "max", band_hz)
     if floor is None and ceiling is None:
-        raise requirement.error(
-            "min", "has no limit", "`min`, `max` or both", "add `max: 0 dB`"
-        )
+        raise requirement.error("min", "has no limit", "`min`, `max` or both", "add `max: 0 dB`")
     if floor and ceiling and levels.crossed(floor, ceiling, band_hz):
-        raise requirement.error(
-            "min", "the floor lies above the ceiling", "a `min` below `max`"
-        )
+        raise requirement.error("min", "the floor lies above the ceiling", "a `min` below `max`")
     limits = (("at least", floor), ("at most", ceiling))
     return Gain(band_hz, tuple((sense, limit) for sense, limit in limits if limit))
 

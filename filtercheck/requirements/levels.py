@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from itertools import pairwise
 from math import inf, nan
 
 import numpy as np
@@ -50,7 +51,7 @@ def _stretches(band_hz: Band, limit_db: Mask) -> Iterator[tuple[Band, float]]:
     low, high = band_hz
     inner = [freq for freq, _ in limit_db if low < freq < high]
     ends = [low, *inner, high]
-    for stretch in zip(ends[:-1], ends[1:], strict=True):
+    for stretch in pairwise(ends):
         if len(limit_db) == 1:
             yield stretch, 0.0
         else:

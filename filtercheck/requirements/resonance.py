@@ -8,13 +8,14 @@
         q: [9.5, 10.5]
         verify: nominal
 
-Both are those of the response, as measured on a bench: f1 and f2 are where the power has
-fallen to half on either side of the largest gain; the centre frequency is the geometric mean
-of f1 and f2, and Q is the centre frequency over f2 - f1. For a section of second order these
-are f0 and Q of its pole pair. Either `centre` or `q` may be left out.
+Both are those of the response, as measured on a bench: f1 and f2 are where the
+power has fallen to half on either side of the largest gain; the centre
+frequency is the geometric mean of f1 and f2, and Q is the centre frequency
+over f2 - f1. For a section of second order these are f0 and Q of its pole
+pair. Either `centre` or `q` may be left out.
 
-Source: common practice, no source. For a second-order band-pass |H| is symmetric in the
-logarithm of frequency about f0, and f2 - f1 = f0/Q.
+Source: common practice, no source. For a second-order band-pass |H| is
+symmetric in the logarithm of frequency about f0, and f2 - f1 = f0/Q.
 """
 
 from __future__ import annotations
@@ -81,9 +82,7 @@ def read(requirement: Requirement) -> Resonance:
     """
     wanted = Resonance(requirement.interval("centre"), requirement.interval("q"))
     if wanted.centre_hz is None and wanted.q is None:
-        raise requirement.error(
-            "centre", "has no limit", "`centre`, `q` or both", "add `q: [ , ]`"
-        )
+        raise requirement.error("centre", "has no limit", "`centre`, `q` or both", "add `q: [ , ]`")
     return wanted
 
 

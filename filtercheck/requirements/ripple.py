@@ -8,8 +8,8 @@
         max: 0.5 dB
         verify: nominal
 
-The ripple is peak to peak: the largest gain in the band less the smallest, its ends
-included, both of the same board.
+The ripple is peak to peak: the largest gain in the band less the smallest, its
+ends included, both of the same board.
 """
 
 from __future__ import annotations

@@ -66,6 +66,4 @@ def _located(error: NetworkError, group: Group, subject: Subject) -> InputError:
     designator = group.designator.get(error.culprit, error.culprit)
     places = {c.designator: c.at for c in subject.connections}
     at = places.get(designator) or subject.parts[designator].at
-    return InputError(
-        error.problem, at, found=error.found, allowed=error.allowed, fix=error.fix
-    )
+    return InputError(error.problem, at, found=error.found, allowed=error.allowed, fix=error.fix)
