@@ -26,7 +26,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
-from math import isfinite
+from math import isfinite, nan
 
 from filtercheck.model.requirement import Band, Requirement
 from filtercheck.model.verdict import Finding
@@ -51,7 +51,8 @@ class Corner:
         top = self.reference.of(curve)
         fall, place = rounded(self.fall_db, "level"), rounded(top.freq_hz, "frequency")
         level_db = top.gain_db - self.fall_db
-        corner_hz = None
+        # Without a signal to measure from there is no corner to speak of: undecided.
+        corner_hz: float | None = nan
         note = f"there is no signal at the reference, {place}"
         if isfinite(level_db):
             corner_hz = curve.fall_hz(top.freq_hz, level_db, upward=self.upward)
