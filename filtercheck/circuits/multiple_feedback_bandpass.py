@@ -10,7 +10,7 @@
                  |     |
               ground ground
 
-    fit: {Rin: , Rg: , C1: , C2: , R2: , A: }
+    fit: {Rin: , C1: , C2: , R2: , A: }
 
 Rg divides the input; it may be left out. Rb only balances the bias current;
 where it is left out, that input is grounded.

@@ -18,8 +18,11 @@ def within(
     freq_hz: float | None,
     note: str,
 ) -> Iterator[Finding]:
-    """Yield a finding for each of two limits on a number; a number that does not exist
-    (None) is beyond both, one that has no meaning (NaN) is neither within nor beyond. The margin is a fraction of the limit."""
+    """Yield a finding for each of two limits on a number; the margin is a fraction of the limit.
+
+    A number that does not exist (None) is beyond both; one that has no meaning (NaN) is
+    neither within nor beyond.
+    """
     for sense, limit in zip(("at least", "at most"), limits, strict=True):
         sign = 1.0 if sense == "at least" else -1.0
         margin = float("-inf") if value is None else sign * (value - limit) / limit
