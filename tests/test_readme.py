@@ -89,16 +89,12 @@ def test_topics_in_the_text_exist() -> None:
 
 
 def test_the_pipeline_snippet_uses_options_that_exist(tmp_path: Path) -> None:
-    steps = [yaml.safe_load(block) for block in blocks("yaml") if block.startswith("- run")][0]
+    steps = next(yaml.safe_load(block) for block in blocks("yaml") if block.startswith("- run"))
     command = next(step["run"] for step in steps if "--junit" in step["run"])
     demo.write(tmp_path)
 
-    assert (
-        run(
-            command.replace("filtercheck", f"{sys.executable} -m filtercheck", 1), tmp_path
-        ).returncode
-        == 0
-    )
+    ours = command.replace("filtercheck", f"{sys.executable} -m filtercheck", 1)
+    assert run(ours, tmp_path).returncode == 0
     assert (tmp_path / "results" / "junit.xml").exists()
 
 

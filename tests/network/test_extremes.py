@@ -1,0 +1,202 @@
+"""Extremes, crossings, phase and delay of responses: laws, closed forms and a graded search."""
+
+from __future__ import annotations
+
+from math import inf, log10, pi, sqrt
+
+import mpmath
+import numpy as np
+import pytest
+from hypothesis import given, settings
+from hypothesis import strategies as st
+from numpy.typing import NDArray
+
+from filtercheck.network.curve import Curve
+from filtercheck.network.ratio import Ratio
+from filtercheck.network.response import Response, product
+
+Real = NDArray[np.float64]
+
+
+def second_order(f0_hz: float, q: float, zero: tuple[float, float] | None = None) -> Response:
+    """Return a low-pass section, or one with a zero pair at f_z (in f0) of damping d."""
+    if zero is None:
+        numerator = np.array([1.0])
+    else:
+        place, damping = zero
+        numerator = np.array([place**2, 2 * damping * place, 1.0])
+    denominator = np.array([1.0, 1 / q, 1.0])
+    return Response((Ratio(numerator, denominator, 0, 0, 2 * pi * f0_hz),))
+
+
+def one_pole(f0_hz: float, *, high: bool = False) -> Response:
+    ones = np.array([1.0, 1.0])
+    return Response((Ratio(np.array([1.0]), ones, int(high), 0, 2 * pi * f0_hz),))
+
+
+@pytest.mark.parametrize("q", [0.75, 5.0, 100.0, 1e4, 1e6])
+@pytest.mark.parametrize("f0_hz", [0.317, 1234.5678, 9.87e6])
+def test_a_resonance_is_found_however_narrow(q: float, f0_hz: float) -> None:
+    curve = Curve(second_order(f0_hz, q))
+    peak = curve.highest((f0_hz / 1e4, f0_hz * 1e4))
+
+    # |H| is largest at f0 sqrt(1 - 1/(2 Q^2)), where it is Q/sqrt(1 - 1/(4 Q^2)).
+    height_db = 20 * log10(q / sqrt(1 - 1 / (4 * q * q)))
+    assert peak.gain_db == pytest.approx(height_db, abs=1e-6)
+    assert peak.freq_hz == pytest.approx(f0_hz * sqrt(1 - 1 / (2 * q * q)), rel=1e-6)
+    excess_db = peak.gain_db - (height_db - 0.002)
+    assert excess_db == pytest.approx(0.002, abs=1e-3)
+
+
+def test_no_grid_of_the_usual_kind_would_have_found_it() -> None:
+    response = second_order(1234.5678, 1e4)
+    grid = np.geomspace(1.0, 1e6, 2001)
+
+    assert response.gain_db(grid).max() < Curve(response).highest().gain_db - 20
+
+
+sections = st.lists(
+    st.builds(
+        second_order,
+        st.floats(10.0, 1e5),
+        st.floats(0.3, 1e4),
+        st.one_of(
+            st.none(),
+            st.tuples(st.floats(0.2, 5.0), st.one_of(st.just(0.0), st.floats(1e-4, 2.0))),
+        ),
+    ),
+    min_size=1,
+    max_size=4,
+)
+
+
+def graded(response: Response, low_hz: float, high_hz: float) -> Real:
+    """Return a dense grid that closes in on every root, whatever its Q."""
+    roots = np.concatenate([response.poles, response.zeros])
+    steps = np.concatenate([[0.0], np.geomspace(1e-8, 3.0, 160)])
+    around = [
+        abs(r) / (2 * pi) * np.exp(sign * steps * max(1e-3, abs(r.real / r)))
+        for r in roots
+        for sign in (-1, 1)
+    ]
+    whole = np.concatenate([*around, np.geomspace(max(low_hz, 1e-3), min(high_hz, 1e9), 3000)])
+    return np.asarray(whole[(whole >= low_hz) & (whole <= high_hz)])
+
+
+@settings(max_examples=150, deadline=None)
+@given(sections, st.floats(1.0, 1e4), st.floats(1.1, 1e4), st.booleans(), st.booleans())
+def test_nothing_lies_beyond_the_extremes(
+    parts: list[Response], low_hz: float, span: float, from_zero: bool, open_end: bool
+) -> None:
+    response = product(parts)
+    band = (0.0 if from_zero else low_hz, inf if open_end else low_hz * span)
+    curve = Curve(response)
+    gain_db = response.gain_db(graded(response, *band))
+
+    assert gain_db.max() <= curve.highest(band).gain_db + 1e-9
+    low_db = curve.lowest(band).gain_db
+    # At a zero on the axis itself the gain has no floor; "lowest" must then be far down.
+    assert gain_db.min() >= low_db - 1e-9 or low_db < -180
+
+
+@settings(max_examples=80, deadline=None)
+@given(sections, st.floats(-60.0, 60.0))
+def test_a_sloped_line_is_approached_nowhere_nearer(parts: list[Response], line: float) -> None:
+    response = product(parts)
+    band = (5.0, 2e5)
+    curve = Curve(response)
+
+    def above(freq_hz: Real) -> Real:
+        return np.asarray(response.gain_db(freq_hz) - line * np.log(freq_hz))
+
+    nearest = above(curve.candidates_hz(band, line)).max()
+    assert above(graded(response, *band)).max() <= nearest + 1e-9
+
+
+@pytest.mark.parametrize("fall_db", [0.01, 3.0, 60.0])
+def test_corners_of_one_pole(fall_db: float) -> None:
+    # By hand: |H|^2 = 1/(1 + x^2), which has fallen by d dB at x = sqrt(10^(d/10) - 1).
+    x = sqrt(10 ** (fall_db / 10) - 1)
+
+    down = Curve(one_pole(1e3)).fall_hz(0.0, -fall_db, upward=True)
+    up = Curve(one_pole(1e3, high=True)).fall_hz(inf, -fall_db, upward=False)
+
+    assert down == pytest.approx(1e3 * x, rel=1e-10)
+    assert up == pytest.approx(1e3 / x, rel=1e-10)
+
+
+def test_corners_that_do_not_exist() -> None:
+    low, high = Curve(one_pole(1e3)), Curve(one_pole(1e3, high=True))
+
+    assert low.fall_hz(10.0, -3.0, upward=False) is None
+    assert high.fall_hz(10e3, -3.0, upward=True) is None
+
+
+def test_the_first_crossing_counts() -> None:
+    # A null at twice the pole frequency: the gain falls to it and rises again beyond.
+    response = second_order(1e3, 5.0, zero=(2.0, 0.0))
+    crossing = Curve(response).fall_hz(0.0, response.gain_db(np.zeros(1))[0] - 20, upward=True)
+
+    assert crossing is not None
+    assert 1e3 < crossing < 2e3
+    fine = response.gain_db(np.linspace(1.0, crossing * (1 - 1e-9), 20000))
+    assert (fine > response.gain_db(np.zeros(1))[0] - 20).all()
+
+
+def test_ends_of_the_axis() -> None:
+    freq_hz = np.array([0.0, inf])
+
+    np.testing.assert_array_equal(one_pole(1e3).gain_db(freq_hz), [0.0, -inf])
+    np.testing.assert_array_equal(one_pole(1e3, high=True).gain_db(freq_hz), [-inf, 0.0])
+    notch = second_order(1e3, 1.0, zero=(2.0, 0.0)).gain_db(freq_hz)
+    np.testing.assert_allclose(notch, [20 * log10(4.0), 0.0], atol=1e-12)
+
+
+def test_a_flat_response_has_no_turns() -> None:
+    flat = Response((Ratio(np.array([3.0]), np.array([1.0]), 0, 0, 1.0),))
+    curve = Curve(flat)
+
+    assert list(curve.candidates_hz((0.0, inf))) == [0.0, inf]
+    assert curve.highest().gain_db == pytest.approx(20 * log10(3.0))
+    assert curve.lowest().gain_db == pytest.approx(20 * log10(3.0))
+
+
+def test_an_all_pass_is_flat_to_rounding() -> None:
+    wide = Ratio(np.array([1.0, -0.2, 1.0]), np.array([1.0, 0.2, 1.0]), 0, 0, 2 * pi * 1e3)
+    curve = Curve(Response((wide,)))
+
+    assert abs(curve.highest().gain_db) < 1e-12
+    assert abs(curve.lowest().gain_db) < 1e-12
+
+
+def test_phase_is_continuous_and_ends_where_it_must() -> None:
+    response = product([second_order(1e3, 0.6), second_order(2e3, 3.0), one_pole(700.0)])
+    freq_hz = np.geomspace(1e-3, 1e9, 200_001)
+    phase = response.phase_deg(freq_hz)
+
+    assert np.abs(np.diff(phase)).max() < 1.0
+    assert phase[0] == pytest.approx(0.0, abs=1e-3)
+    assert phase[-1] == pytest.approx(-450.0, abs=1e-3)  # five poles, 90 degrees each
+    # One point alone has the same phase as within a sweep.
+    assert response.phase_deg(freq_hz[-1:])[0] == phase[-1]
+
+
+def test_group_delay_is_minus_the_derivative_of_the_phase() -> None:
+    response = product([second_order(1e3, 8.0), one_pole(500.0, high=True)])
+
+    def phase(omega: mpmath.mpf) -> mpmath.mpf:
+        s = mpmath.mpc(0, omega) / (2 * mpmath.pi)
+        low = 1 / (1 + s / 8000 + (s / 1000) ** 2)
+        return mpmath.arg(low * (s / 500) / (1 + s / 500))
+
+    for f in (10.0, 900.0, 1000.0, 5000.0):
+        with mpmath.workdps(40):
+            want = -mpmath.diff(phase, 2 * mpmath.pi * f)
+        assert response.group_delay_s(np.array([f]))[0] == pytest.approx(float(want), rel=1e-9)
+
+
+def test_group_delay_at_0_hz_of_a_high_pass_is_finite() -> None:
+    # By hand: the phase is 90 degrees - atan(f/fc), whose delay at 0 Hz is 1/(2 pi fc).
+    delay = one_pole(100.0, high=True).group_delay_s(np.zeros(1))[0]
+
+    assert delay == pytest.approx(1 / (2 * pi * 100.0), rel=1e-12)
