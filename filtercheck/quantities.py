@@ -149,12 +149,12 @@ def _misfit(text: str, suffix: str, kind: Quantity) -> QuantityError:
             problem = f"the unit {unit} does not fit {kind.noun}"
             return _error(problem, text, kind, f"write {kind.noun}, such as {kind.example}")
     for unit in kind.units:
+        if not kind.prefixed and suffix.lower().endswith(unit.lower()):
+            fix = f"write {kind.unit} without a prefix"
+            return _error(f"{kind.noun} takes no prefix", text, kind, fix)
         if suffix.lower() == f"m{unit}".lower():
             fix = f"write m{unit} for milli or M{unit} for mega"
             return _error("the prefix is not clear", text, kind, fix)
-        if suffix.lower().endswith(unit.lower()) and not kind.prefixed:
-            fix = f"write {kind.unit} without a prefix"
-            return _error(f"{kind.noun} takes no prefix", text, kind, fix)
     if suffix in _PREFIXES:
         return _error(f"{kind.noun} takes no prefix", text, kind, "write the number out")
     fix = f"write {kind.noun}, such as {kind.example}"

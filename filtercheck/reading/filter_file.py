@@ -30,7 +30,8 @@ def subject(text: str, sha256: str, file: str) -> Subject:
     data = cast("Mapping[str, Data]", source.data)
     faults: list[InputError] = []
     if ("sections" in data) == ("connect" in data):
-        faults.append(_not_one_circuit(source, "connect" in data))
+        # What is fitted where cannot be told then, so nothing more is said of it.
+        raise InputErrors([_not_one_circuit(source, "connect" in data)])
     found = Subject(
         name=str(data["filter"]),
         title=str(data.get("title", "")),
