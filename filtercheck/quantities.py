@@ -3,7 +3,8 @@
 A quantity is a number with an optional SI prefix and unit, with or without a
 space:
 
-    4700   4.7e3   4.7k   4.7 kΩ   4.7 kohm   15 nF   10MHz   22 µH   -0.5 dB   1 %   50 ppm/K
+    4700   4.7e3   4.7k   4.7 kΩ   4.7 kohm
+    15 nF   10MHz   22 µH   -0.5 dB   1 %   50 ppm/K
 
 or a code of IEC 60062, in which a letter stands for the decimal point:
 

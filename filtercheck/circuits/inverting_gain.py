@@ -6,6 +6,7 @@
                          A >--+--- out
     ground --- Rb ----(+)
 
+    circuit: inverting-gain
     fit: {Rin: , Rf: , A: }
 
 Rb only balances the bias current; where it is left out, that input is

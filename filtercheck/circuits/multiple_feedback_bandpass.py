@@ -10,6 +10,7 @@
                  |     |
               ground ground
 
+    circuit: multiple-feedback-bandpass
     fit: {Rin: , C1: , C2: , R2: , A: }
 
 Rg divides the input; it may be left out. Rb only balances the bias current;

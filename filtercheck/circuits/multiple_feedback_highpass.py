@@ -10,6 +10,7 @@
                  |     |
               ground ground
 
+    circuit: multiple-feedback-highpass
     fit: {Cin: , Cf: , C2: , R1: , R2: , A: }
 
 Rb only balances the bias current; where it is left out, that input is

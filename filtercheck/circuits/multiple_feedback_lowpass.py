@@ -10,6 +10,7 @@
                  |     |
               ground ground
 
+    circuit: multiple-feedback-lowpass
     fit: {Rin: , Rf: , R2: , C1: , C2: , A: }
 
 Rb only balances the bias current; where it is left out, that input is

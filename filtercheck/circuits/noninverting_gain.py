@@ -6,6 +6,7 @@
                    |          |
                    +--- Rf ---+
 
+    circuit: noninverting-gain
     fit: {Rf: , Rg: , A: }
 
 Outputs: out.

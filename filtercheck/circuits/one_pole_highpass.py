@@ -6,6 +6,7 @@
                 |   |        |
              ground +--------+
 
+    circuit: one-pole-highpass
     fit: {C: , R: , A: }
 
 Outputs: highpass.

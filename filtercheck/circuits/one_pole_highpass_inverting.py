@@ -6,6 +6,7 @@
                              A >--+--- highpass
     ground ---- Rb --------(+)
 
+    circuit: one-pole-highpass-inverting
     fit: {C: , Rin: , Rf: , A: }
 
 Rb only balances the bias current; where it is left out, that input is

@@ -6,6 +6,7 @@
                 |   |        |
              ground +--------+
 
+    circuit: one-pole-lowpass
     fit: {R: , C: , A: }
 
 Outputs: lowpass.

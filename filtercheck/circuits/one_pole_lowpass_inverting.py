@@ -8,6 +8,7 @@
                           A >--+--- lowpass
     ground --- Rb -----(+)
 
+    circuit: one-pole-lowpass-inverting
     fit: {Rin: , Rf: , C: , A: }
 
 Rb only balances the bias current; where it is left out, that input is

@@ -6,6 +6,7 @@
                 |
              ground
 
+    circuit: passive-highpass
     fit: {C: , R: }
 
 Outputs: highpass.

@@ -6,6 +6,7 @@
                 |
              ground
 
+    circuit: passive-lowpass
     fit: {R: , C: }
 
 Outputs: lowpass.

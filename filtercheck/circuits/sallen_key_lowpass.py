@@ -12,6 +12,7 @@
                              |
                            ground
 
+    circuit: sallen-key-lowpass
     fit: {R1: , R2: , C1: , C2: , A: }
 
 Rf and Rg set the gain K = 1 + Rf/Rg; where both are left out, K = 1.

@@ -15,7 +15,9 @@
                   |                      |               |
                 ground                 ground          ground
 
-    fit: {Rin: , Rhp: , Rlp: , Rbp: , Rg: , R1: , C1: , R2: , C2: , A0: , A1: , A2: }
+    circuit: state-variable
+    fit: {Rin: , Rhp: , Rlp: , Rbp: , Rg: ,
+          R1: , C1: , R2: , C2: , A0: , A1: , A2: }
 
 Rbp is the damping resistor, from the band-pass output. Rb1 and Rb2 only
 balance the bias currents of the integrators; where they are left out, those

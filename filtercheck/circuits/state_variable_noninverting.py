@@ -16,7 +16,9 @@ node.
                   |                      |               |
                 ground                 ground          ground
 
-    fit: {Rin: , Rbp: , Rhp: , Rlp: , R1: , C1: , R2: , C2: , A0: , A1: , A2: }
+    circuit: state-variable-noninverting
+    fit: {Rin: , Rbp: , Rhp: , Rlp: ,
+          R1: , C1: , R2: , C2: , A0: , A1: , A2: }
 
 Rbp is the damping resistor, from the band-pass output. Rg may be left out. Rb1
 and Rb2 only balance the bias currents of the integrators; where they are left

@@ -6,6 +6,7 @@
            |           |
            +-----------+
 
+    circuit: unity-gain
     fit: {A: }
 
 Outputs: out.

@@ -1,4 +1,17 @@
-"""Findings, verdicts, and the only place that decides."""
+"""Findings, verdicts, and the only place that decides.
+
+Every requirement gets one of three verdicts:
+
+    pass        it holds
+    fail        it does not; the report names frequency, value, limit, margin
+    undecided   neither could be shown; this fails the build just as a fail does
+
+A margin is the distance of the closest approach to a limit, negative beyond
+it: in dB for a level, in per cent of the limit for a frequency or a Q. Exactly
+on the limit is inside it. A circuit with a pole in the right half-plane
+oscillates and fails every requirement; one with a pole on the imaginary axis,
+or too near to tell, is undecided.
+"""
 
 from __future__ import annotations
 

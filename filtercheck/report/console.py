@@ -20,9 +20,10 @@ WIDTHS = (9, 11, 10, 11, 35)  # with a space between two columns these are 80
 
 def render(run: Run) -> str:
     """Return the summary."""
-    lines = [_title(run), ""]
-    if run.verdicts:
-        lines += [_row(HEADINGS), *(_line(verdict) for verdict in sentences.worst_first(run))]
+    lines = wrapped(_title(run))
+    if not run.verdicts:
+        return "\n".join(lines) + "\n"
+    lines += ["", _row(HEADINGS), *(_line(verdict) for verdict in sentences.worst_first(run))]
     for verdict in sentences.worst_first(run):
         if verdict.outcome is not Outcome.PASS:
             lines += ["", *_details(verdict)]
@@ -38,7 +39,9 @@ def _title(run: Run) -> str:
     what = f"{count} requirement{'' if count == 1 else 's'} of {len(run.filters)} filter"
     what += "" if len(run.filters) == 1 else "s"
     name = f"{visible(run.board)}: " if run.board else ""
-    return f"{name}{what}: {sentences.counts(run)}"
+    broken = len({fault.at.file for fault in run.faults})
+    rest = f"; {broken} file{'' if broken == 1 else 's'} could not be judged" if broken else ""
+    return f"{name}{what}: {sentences.counts(run)}{rest}"
 
 
 def _row(cells: Iterable[str]) -> str:
@@ -83,7 +86,8 @@ def _details(verdict: Verdict) -> Iterator[str]:
 def _verified(run: Run) -> Iterator[str]:
     """Yield what each way to verify that was used does, and does not, consider."""
     if any(verdict.verify == "nominal" for verdict in run.verdicts):
-        yield "  nominal: the part values as fitted and no others; tolerances are not considered"
+        text = "nominal: the part values as fitted and no others; tolerances are not considered"
+        yield from wrapped(text, "  ")
 
 
 def _basis(judged: Judged) -> Iterator[str]:

@@ -44,11 +44,11 @@ def _plain(suite: ET.Element) -> ET.Element:
 
 def _case(verdict: Verdict) -> TestCase:
     case = TestCase(verdict.requirement, classname=f"{verdict.filter}.{verdict.kind}")
-    summary = visible(sentences.summary(verdict))
+    summary = sentences.summary(verdict)
     details = "\n".join(
         [
             f"{verdict.filter} {verdict.requirement}: {verdict.kind} of {verdict.output}",
-            *([verdict.reason] if verdict.reason else []),
+            *([] if verdict.findings else [summary]),
             *(sentences.said(finding) for finding in verdict.findings),
             f"verified: {verdict.verify}",
             visible(str(verdict.at)),

@@ -7,6 +7,7 @@ from math import inf, isnan
 from filtercheck.model.part import Figure, OpAmp, Part, Passive
 from filtercheck.model.verdict import Finding, Outcome, Run, Verdict
 from filtercheck.quantities import rounded
+from filtercheck.wording import visible
 
 CAUTION = (
     "A computed check is no certificate. Where a filter protects people or property, "
@@ -63,7 +64,7 @@ def place(finding: Finding) -> str:
 def summary(verdict: Verdict) -> str:
     """Return one line that is never empty: what was found, where, and against what."""
     if verdict.reason:
-        return verdict.reason
+        return visible(verdict.reason)
     if not verdict.findings:
         return "nothing was found to judge"
     return said(verdict.findings[0])
@@ -74,7 +75,7 @@ def said(finding: Finding) -> str:
     where = "" if finding.quantity == "frequency" else f" at {place(finding)}"
     text = f"{finding.subject} {value(finding)}{where}, {finding.sense} "
     text += f"{rounded(finding.limit, finding.quantity)}: margin {margin(finding)}"
-    return f"{text} ({finding.note})" if finding.note else text
+    return f"{text} ({visible(finding.note)})" if finding.note else text
 
 
 def fitted(part: Part) -> str:
