@@ -38,9 +38,10 @@ class Slope:
     left: Real  # (M,)
     right: Real  # (M,)
     series: Real  # (M, NODES), coefficients of E on each piece [dB/neper]
+    nulls: Real  # (Z,), ln f of the zeros: on a perfect null E jumps and has no root
 
     def turns_hz(self, low_hz: float, high_hz: float, line: float = 0.0) -> Real:
-        """Return where gain - line * ln f is stationary strictly inside a band.
+        """Return where gain - line * ln f is stationary or has a null, strictly inside a band.
 
         Parameters
         ----------
@@ -61,7 +62,7 @@ class Slope:
         series[:, 0] -= line
         within = (self.right > low) & (self.left < high)
         may_vanish = ~(np.abs(series[:, 0]) > np.abs(series[:, 1:]).sum(axis=1))
-        found: list[float] = []
+        found: list[float] = list(self.nulls)
         for i in np.flatnonzero(within & may_vanish):
             middle, half = (
                 (self.left[i] + self.right[i]) / 2,
@@ -76,7 +77,7 @@ def slope(response: Response) -> Slope:
     roots = np.concatenate([response.zeros, response.poles])
     if not len(roots):
         empty = np.empty(0)
-        return Slope(empty, empty, np.empty((0, NODES)))
+        return Slope(empty, empty, np.empty((0, NODES)), empty)
     size = np.abs(roots)
     place = np.log(size / (2.0 * np.pi))
     depth = np.arcsin(np.abs(roots.real) / size)
@@ -87,7 +88,8 @@ def slope(response: Response) -> Slope:
     # Interpolation at the points of the first kind is a discrete cosine transform.
     transform = 2.0 / NODES * chebyshev.chebvander(points, NODES - 1)
     transform[:, 0] /= 2.0
-    return Slope(left, right, values @ transform)
+    nulls = place[: len(response.zeros)]
+    return Slope(left, right, values @ transform, nulls)
 
 
 def _pieces(place: Real, depth: Real) -> tuple[Real, Real]:

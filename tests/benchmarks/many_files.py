@@ -48,9 +48,8 @@ def main() -> None:
     many = [1e3 * (thousand - one) / 999 for one, _, thousand in runs]
     ratio = statistics.median(b / a for a, b in zip(few, many, strict=True))
     print(f"1000 files / 100 files, CPU for each file: median {ratio:.2f} of {ROUNDS} pairs")
-    print(
-        f"  {statistics.median(many):.1f} ms for each of 1000, {statistics.median(few):.1f} ms of 100"
-    )
+    each = f"{statistics.median(many):.1f} ms of 1000, {statistics.median(few):.1f} ms of 100"
+    print(f"  for each file: {each}")
 
 
 main()

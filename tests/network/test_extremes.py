@@ -95,8 +95,18 @@ def test_nothing_lies_beyond_the_extremes(
 
     assert gain_db.max() <= curve.highest(band).gain_db + 1e-9
     low_db = curve.lowest(band).gain_db
-    # At a zero on the axis itself the gain has no floor; "lowest" must then be far down.
-    assert gain_db.min() >= low_db - 1e-9 or low_db < -180
+    # At a zero on the axis itself the gain has no floor: the nearest float to its frequency, a
+    # part in 1e15 away, is down by 20 log10(2 Q 1e-15), with Q = 1e4 by more than 200 dB.
+    assert gain_db.min() >= low_db - 1e-9 or low_db < -150
+
+
+@pytest.mark.parametrize("ahead", [1e-2, 1e-6, 1e-9])
+def test_a_perfect_null_is_found_next_to_the_end_of_a_band(ahead: float) -> None:
+    curve = Curve(second_order(1e3, 2.0, zero=(1.0, 0.0)))
+
+    assert curve.lowest((10.0, 1e3 * (1 + ahead))).gain_db < -200
+    assert curve.lowest((1e3 * (1 - ahead), inf)).gain_db < -200
+    assert curve.lowest((1e3 * (1 + ahead), inf)).gain_db > 20 * log10(ahead)
 
 
 @settings(max_examples=80, deadline=None)
