@@ -191,6 +191,17 @@ def test_phase_is_continuous_and_ends_where_it_must() -> None:
     assert response.phase_deg(freq_hz[-1:])[0] == phase[-1]
 
 
+def test_phase_of_an_inverting_response_is_continuous_from_180_degrees() -> None:
+    low = second_order(1e3, 5.0).factors[0]
+    inverting = Response((Ratio(-low.numerator, low.denominator, 0, 0, low.omega0),))
+    freq_hz = np.geomspace(1e-3, 1e9, 100_001)
+    phase = product([inverting, one_pole(3e3)]).phase_deg(freq_hz)
+
+    assert np.abs(np.diff(phase)).max() < 1.0
+    assert phase[0] == pytest.approx(180.0, abs=1e-3)
+    assert phase[-1] == pytest.approx(180.0 - 270.0, abs=1e-3)
+
+
 def test_group_delay_is_minus_the_derivative_of_the_phase() -> None:
     response = product([second_order(1e3, 8.0), one_pole(500.0, high=True)])
 
