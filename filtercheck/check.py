@@ -43,7 +43,6 @@ def judge(subject: Subject) -> Judged:
         subject.name,
         subject.title,
         subject.file,
-        subject.sha256,
         tuple(subject.parts.values()),
         tuple(verdicts),
     )

@@ -11,6 +11,7 @@ from filtercheck.model.sample import Sample
 from filtercheck.model.subject import Subject
 from filtercheck.model.verdict import Judged, Run
 from filtercheck.reading import changes, discovery
+from filtercheck.reading.files import File, content
 from filtercheck.reading.filter_file import subject
 
 
@@ -31,8 +32,9 @@ def judged(paths: Sequence[str], settings: Sequence[str] = ()) -> Run:
     """
     found = discovery.find(paths)
     faults: list[InputError] = []
+    hashes = dict(found.hashes)
     subjects = changes.changed(
-        _subjects(found.files, faults), [changes.change(given) for given in settings]
+        _subjects(found.files, faults, hashes), [changes.change(given) for given in settings]
     )
     filters: list[Judged] = []
     for one in subjects:
@@ -40,15 +42,18 @@ def judged(paths: Sequence[str], settings: Sequence[str] = ()) -> Run:
             filters.append(check.judge(one))
         except InputErrors as errors:
             faults.extend(errors.errors)
-    return Run(found.board, tuple(filters), InputErrors(faults).errors)
+    return Run(found.board, tuple(filters), InputErrors(faults).errors, hashes)
 
 
-def _subjects(files: Sequence[discovery.File], faults: list[InputError]) -> list[Subject]:
-    """Read the files; a filter whose name another file has already is a fault."""
+def _subjects(
+    files: Sequence[File], faults: list[InputError], hashes: dict[str, str]
+) -> list[Subject]:
+    """Read the files and note their hashes; a name that another file has already is a fault."""
     named: dict[str, Subject] = {}
     for file in files:
         try:
-            one = subject(*discovery.content(file), file.name)
+            text, hashes[file.name] = content(file)
+            one = subject(text, file.name)
         except InputErrors as errors:
             faults.extend(errors.errors)
             continue
@@ -88,6 +93,7 @@ def curves(
     found = discovery.find([path])
     if len(found.files) != 1:
         raise UsageError(f"{path}: name one file, not a folder of {len(found.files)}")
-    read = subject(*discovery.content(found.files[0]), found.files[0].name)
+    (file,) = found.files
+    read = subject(content(file)[0], file.name)
     (one,) = changes.changed([read], [changes.change(given) for given in settings])
     return Curves(tuple(sampling.samples(one, output, freq_hz)), sampling.stable(one))

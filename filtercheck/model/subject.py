@@ -48,7 +48,6 @@ class Subject:
     name: str
     title: str
     file: str
-    sha256: str
     sections: tuple[Section, ...]
     connections: tuple[Connection, ...]
     parts: Parts

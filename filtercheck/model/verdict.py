@@ -15,7 +15,7 @@ or too near to tell, is undecided.
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from enum import Enum
 from math import inf, log10
@@ -78,7 +78,6 @@ class Judged:
     name: str
     title: str
     file: str
-    sha256: str
     parts: tuple[Part, ...]
     verdicts: tuple[Verdict, ...]
 
@@ -90,6 +89,7 @@ class Run:
     board: str  # the board's name, empty where there is no board file
     filters: tuple[Judged, ...]
     faults: tuple[InputError, ...]  # what could not be judged
+    hashes: Mapping[str, str]  # input file -> SHA-256 of its bytes
 
     @property
     def verdicts(self) -> tuple[Verdict, ...]:

@@ -17,7 +17,7 @@ from filtercheck.reading.source import Data, Path, Source, read
 _COMMON = ("kind", "output", "verify")
 
 
-def subject(text: str, sha256: str, file: str) -> Subject:
+def subject(text: str, file: str) -> Subject:
     """Return the filter that a file describes.
 
     Raises
@@ -36,7 +36,6 @@ def subject(text: str, sha256: str, file: str) -> Subject:
         name=str(data["filter"]),
         title=str(data.get("title", "")),
         file=file,
-        sha256=sha256,
         sections=tuple(_sections(source)),
         connections=tuple(_connections(source)),
         parts=parts(source, faults),

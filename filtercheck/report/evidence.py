@@ -30,6 +30,7 @@ def render(run: Run) -> str:
         "board": run.board or None,
         "caution": sentences.CAUTION,
         "complete": not run.faults,
+        "inputs": dict(run.hashes),
         "filters": [_filter(judged) for judged in run.filters],
         "faults": [_fault(fault) for fault in run.faults],
     }
@@ -41,7 +42,6 @@ def _filter(judged: Judged) -> Json:
         "filter": judged.name,
         "title": judged.title,
         "file": judged.file,
-        "sha256": judged.sha256,
         "parts": {part.designator: _part(part) for part in judged.parts},
         "requirements": {v.requirement: _requirement(v) for v in judged.verdicts},
     }

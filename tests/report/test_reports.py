@@ -50,7 +50,7 @@ def hostile(text: str) -> Run:
     findings = (replace(finding(-1.0), note=text),)
     verdict = Verdict("f", "R-1", "gain", "out", "nominal", Outcome.FAIL, findings, text, at)
     fault = InputError(text, at, found=text, allowed=text, fix=text)
-    return Run("", (Judged("f", text, text, "0" * 64, (), (verdict,)),), (fault,))
+    return Run("", (Judged("f", text, text, (), (verdict,)),), (fault,), {text: "0" * 64})
 
 
 @pytest.mark.parametrize(
@@ -104,8 +104,11 @@ def test_evidence_is_valid_and_traces_its_inputs(run: Run) -> None:
     assert found["complete"] is False
     assert [fault["file"] for fault in found["faults"]][:1] == ["filters/broken.filter.yaml"]
     assert len(found["filters"]) == 6
-    for one in found["filters"]:
-        assert one["sha256"] == hashlib.sha256(Path(one["file"]).read_bytes()).hexdigest()
+    files = sorted(path.as_posix() for path in Path().rglob("*.yaml"))
+    assert sorted(found["inputs"]) == files
+    for name, digest in found["inputs"].items():
+        assert digest == hashlib.sha256(Path(name).read_bytes()).hexdigest()
+    assert {one["file"] for one in found["filters"]} < set(files)
     by_name = {one["filter"]: one for one in found["filters"]}
     spoiled = by_name["vibration-antialias"]
     assert spoiled["parts"]["R312"]["resistance"] == 48700.0
@@ -184,7 +187,7 @@ def test_console_copes_with_the_longest_names() -> None:
     name = "n" * 60
     at = Position(f"{'d' * 200}.filter.yaml", 1, 1, 1, "")
     verdict = Verdict(name, name, "gain", name, "nominal", Outcome.FAIL, (finding(-1e9),), "", at)
-    text = console.render(Run("", (Judged(name, "", "", "", (), (verdict,)),), ()))
+    text = console.render(Run("", (Judged(name, "", "", (), (verdict,)),), (), {}))
 
     assert max(map(len, text.splitlines())) <= 80
 
