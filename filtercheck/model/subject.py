@@ -2,12 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 
+from filtercheck.errors import InputError
 from filtercheck.model.part import Parts
 from filtercheck.model.requirement import Requirement
 from filtercheck.position import Position
+from filtercheck.wording import listed, suggestion
 
 
 @dataclass(frozen=True)
@@ -19,6 +21,18 @@ class Name:
 
     def __str__(self) -> str:
         return self.word
+
+    def unknown(self, kind: str, allowed: Iterable[str]) -> InputError:
+        """Return the error for a name of no part, output or node that there is."""
+        known = list(allowed)
+        meant = suggestion(self.word, known)
+        return InputError(
+            f"there is no {kind} {self.word!r}",
+            self.at,
+            found=self.word,
+            allowed=listed(known),
+            fix=f"write {meant}" if meant else f"write one of the above, or add {self.word}",
+        )
 
 
 @dataclass(frozen=True)

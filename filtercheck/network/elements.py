@@ -28,7 +28,9 @@ class Symbol:
 
 
 @dataclass(frozen=True, slots=True)
-class Resistor:
+class TwoTerminal:
+    """What a resistor, a capacitor and an inductor have in common."""
+
     name: str
     a: str
     b: str
@@ -38,26 +40,16 @@ class Resistor:
         return (self.a, self.b)
 
 
-@dataclass(frozen=True, slots=True)
-class Capacitor:
-    name: str
-    a: str
-    b: str
-
-    @property
-    def nodes(self) -> tuple[str, ...]:
-        return (self.a, self.b)
+class Resistor(TwoTerminal):
+    __slots__ = ()
 
 
-@dataclass(frozen=True, slots=True)
-class Inductor:
-    name: str
-    a: str
-    b: str
+class Capacitor(TwoTerminal):
+    __slots__ = ()
 
-    @property
-    def nodes(self) -> tuple[str, ...]:
-        return (self.a, self.b)
+
+class Inductor(TwoTerminal):
+    __slots__ = ()
 
 
 @dataclass(frozen=True, slots=True)

@@ -22,6 +22,7 @@ from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from functools import lru_cache
 
+from filtercheck.errors import NetworkError
 from filtercheck.network.elements import (
     GROUND,
     INPUT,
@@ -34,6 +35,10 @@ from filtercheck.network.elements import (
     symbols,
 )
 from filtercheck.network.polynomial import Polynomial
+
+# More terms than this are refused: a network of so many meshes comes from no drawing of a
+# filter, and a stranger's file must not take up the machine. A ladder of 24 elements needs 75 025.
+MOST_TERMS = 1_000_000
 
 Terms = dict[int, int]  # mask of symbols -> integer coefficient
 Entry = list[tuple[int, int]]  # the terms of one matrix entry: (mask with one bit or none, sign)
@@ -55,10 +60,17 @@ def network_functions(network: Network) -> Functions:
     Where the equations have no unique solution for any values, the denominator has no
     terms; `diagnosis` tells why. Cost grows with the number of sub-determinants that are
     not zero: milliseconds for three amplifiers and a dozen parts.
+
+    Raises
+    ------
+    NetworkError
+        If there are more than `MOST_TERMS` terms.
     """
     known = [symbol for element in network.elements for symbol in symbols(element)]
     rows, columns = _equations(network, {symbol: 1 << i for i, symbol in enumerate(known)})
     minors = _minors(rows, len(columns))
+    if minors is None:
+        raise _too_large(network)
     last = len(columns) - 1  # the source's column
     whole: dict[str, Terms] = {}
     for i, name in enumerate(columns):
@@ -128,8 +140,19 @@ def _amplifier_row(
     return row
 
 
-def _minors(rows: Rows, width: int) -> dict[int, Terms]:
-    """Return the minors of all rows by the set of columns used, as bit masks.
+def _too_large(network: Network) -> NetworkError:
+    return NetworkError(
+        "the network is too large to expand",
+        culprit=network.elements[0].name,
+        found=f"{len(network.elements)} parts that make more than {MOST_TERMS:,} terms",
+        allowed="networks with fewer meshes",
+        fix="divide the filter into sections where an amplifier drives the next part",
+    )
+
+
+def _minors(rows: Rows, width: int) -> dict[int, Terms] | None:
+    """Return the minors of all rows by the set of columns used, as bit masks; None when they
+    have too many terms.
 
     Row after row, each set of columns chosen so far keeps its minor; a set that leaves more
     than one column behind which no later row can use is dropped, since it cannot end in a
@@ -151,6 +174,8 @@ def _minors(rows: Rows, width: int) -> dict[int, Terms]:
                     continue
                 flip = -1 if (used >> column).bit_count() % 2 else 1
                 _accumulate(grown.setdefault(chosen, {}), minor, entry, flip)
+            if sum(map(len, grown.values())) > MOST_TERMS:
+                return None
         minors = grown
     return minors
 

@@ -7,7 +7,6 @@ from collections.abc import Iterator, Mapping
 from filtercheck.errors import InputError
 from filtercheck.model.subject import Connection, Name, Subject
 from filtercheck.position import Position
-from filtercheck.wording import listed, suggestion
 
 
 def loose_ends(found: Subject, parts: Mapping[str, Position]) -> Iterator[InputError]:
@@ -30,7 +29,7 @@ def _fitted(found: Subject, parts: Mapping[str, Position]) -> Iterator[InputErro
         if name.word in used:
             yield _twice(name, used[name.word], "part", "one place in the circuit")
         elif name.word not in parts:
-            yield _nowhere("part", name, parts)
+            yield name.unknown("part", parts)
         used.setdefault(name.word, name.at)
     for part, at in parts.items():
         if part not in used:
@@ -47,18 +46,7 @@ def _named(found: Subject) -> Iterator[InputError]:
     for requirement in found.requirements:
         if requirement.output not in found.outputs:
             name = Name(requirement.output, requirement.places["output"])
-            yield _nowhere("output", name, found.outputs)
-
-
-def _nowhere(kind: str, name: Name, allowed: Mapping[str, object]) -> InputError:
-    meant = suggestion(name.word, allowed)
-    return InputError(
-        f"there is no {kind} {name.word!r}",
-        name.at,
-        found=name.word,
-        allowed=listed(allowed),
-        fix=f"write {meant}" if meant else f"add {name.word} to `{kind}s`",
-    )
+            yield name.unknown("output", found.outputs)
 
 
 def _twice(name: Name, first: Position, kind: str, allowed: str) -> InputError:

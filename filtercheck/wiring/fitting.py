@@ -2,15 +2,11 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
 from dataclasses import replace
 from math import inf, pi
 
-from filtercheck.errors import InputError
 from filtercheck.model.part import OpAmp, Part, Passive
-from filtercheck.model.subject import Name
 from filtercheck.network.elements import Amplifier, Element, Symbol
-from filtercheck.wording import listed, suggestion
 
 _NOUNS = {
     "resistance": "a resistor",
@@ -48,15 +44,3 @@ def value(symbol: Symbol, part: Part) -> float:
     if symbol.kind == "inverse gain":
         return 1.0 / (part.open_loop_gain.typical if part.open_loop_gain else inf)
     return 1.0 / (2.0 * pi * (part.gain_bandwidth.typical if part.gain_bandwidth else inf))
-
-
-def unknown(kind: str, name: Name, allowed: Mapping[str, object]) -> InputError:
-    """Return the error for a name that stands for nothing."""
-    meant = suggestion(name.word, allowed)
-    return InputError(
-        f"there is no {kind} {name.word!r}",
-        name.at,
-        found=name.word,
-        allowed=listed(allowed),
-        fix=f"write {meant}" if meant else f"name one of the {kind}s above",
-    )

@@ -15,7 +15,7 @@ from filtercheck.errors import InputError
 from filtercheck.model.part import Part
 from filtercheck.model.subject import Name, Section, Subject
 from filtercheck.network.elements import GROUND, INPUT, Element, Network
-from filtercheck.wiring.fitting import as_real_as, kind, noun, unknown
+from filtercheck.wiring.fitting import as_real_as, kind, noun
 from filtercheck.wiring.groups import Group, Places
 from filtercheck.wording import listed
 
@@ -84,7 +84,7 @@ def _driven(section: Section, circuit: Circuit, last: bool, faults: list[InputEr
                 )
             )
     elif section.drives.word not in circuit.outputs:
-        faults.append(unknown("output", section.drives, circuit.outputs))
+        faults.append(section.drives.unknown("output", circuit.outputs))
     else:
         return section.drives.word
     return only

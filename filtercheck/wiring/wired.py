@@ -10,7 +10,6 @@ from filtercheck.network import diagnosis
 from filtercheck.network.elements import Network
 from filtercheck.network.response import Response
 from filtercheck.wiring.connections import connected
-from filtercheck.wiring.fitting import unknown
 from filtercheck.wiring.groups import Group, Wiring
 from filtercheck.wiring.sections import cascade
 
@@ -28,7 +27,7 @@ def wired(subject: Subject) -> Wiring:
     groups, places = join(subject, faults)
     for output in subject.outputs.values():
         if output.word not in places:
-            faults.append(unknown(kind, output, places))
+            faults.append(output.unknown(kind, places))
     if faults:
         raise InputErrors(faults)
     wiring = Wiring(tuple(groups), {n: places[o.word] for n, o in subject.outputs.items()})

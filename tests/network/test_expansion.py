@@ -8,6 +8,7 @@ from math import inf, pi
 import numpy as np
 import pytest
 
+from filtercheck.errors import NetworkError
 from filtercheck.network.curve import Curve
 from filtercheck.network.elements import (
     GROUND,
@@ -203,3 +204,13 @@ def test_symbols_common_to_all_terms_cancel() -> None:
     balance = [s.element for s in functions.denominator.symbols].index("Rb")
 
     assert all(not mask >> balance & 1 for mask in functions.denominator.terms)
+
+
+def test_a_network_of_endless_meshes_is_refused() -> None:
+    # A complete graph of n nodes has n^(n-2) spanning trees (Cayley), each of them a term.
+    nodes = [INPUT, GROUND, *(f"n{i}" for i in range(18))]
+    pairs = [(a, b) for i, a in enumerate(nodes) for b in nodes[i + 1 :]]
+    network = Network(tuple(Resistor(f"R{i}", a, b) for i, (a, b) in enumerate(pairs)))
+
+    with pytest.raises(NetworkError, match="too large to expand"):
+        network_functions(network)
