@@ -25,10 +25,9 @@ import re
 from dataclasses import dataclass
 from decimal import Decimal
 from functools import lru_cache
-from math import inf, isfinite, isnan
+from math import isfinite, isnan
 
 from filtercheck.errors import QuantityError
-from filtercheck.wording import suggestion
 
 LONGEST = 64
 _PREFIXES = {"p": -12, "n": -9, "u": -6, "µ": -6, "μ": -6, "m": -3, "": 0}
@@ -36,23 +35,10 @@ _PREFIXES |= {"k": 3, "K": 3, "M": 6, "G": 9, "T": 12}
 _SHOWN = {-12: "p", -9: "n", -6: "µ", -3: "m", 0: "", 3: "k", 6: "M", 9: "G", 12: "T"}
 
 _NUMBER = re.compile(
-    r"([+-]?)([0-9]+\.?[0-9]*|\.[0-9]+)(?:[eE]([+-]?[0-9]+))?[ \u00a0]?([^0-9\s+-]*)",
+    r"([+-]?)([0-9]+\.?[0-9]*|\.[0-9]+)(?:[eE]([+-]?[0-9]{1,4}))?[ \u00a0]?([^0-9\s+-]*)",
     re.ASCII,
 )
 _CODE = re.compile(r"([+-]?)([0-9]*)([A-Za-zµμ])([0-9]+)[ \u00a0]?([^0-9\s]*)", re.ASCII)
-# Signs of what was written instead of a number, each with what to do about it.
-_HINTS = (
-    (re.compile(r"_"), "leave the underscores out"),
-    (re.compile(r":"), "write one number, without a colon"),
-    (re.compile(r"(?i)^[+-]?0[xbo]"), "write the number in decimal"),
-    (re.compile(r"(?i)^[+-]?(nan|inf|infinite|infinity)\b"), "write a finite number"),
-    (re.compile(r"[^\D0-9]"), "write the number in the digits 0 to 9"),
-    (re.compile(r"[0-9][\s'’]+[0-9]"), "leave the separator out of the number"),
-    (re.compile(r"[^\S \u00a0]"), "write an ordinary space"),
-    (re.compile(r"[pnuµμmkKMGT]\s+\D"), "write the prefix and the unit without a space"),
-    (re.compile(r"(?i)[0-9]\s*meg"), "write M for mega"),
-    (re.compile(r"^\D*$"), "begin with a number"),
-)
 
 
 @dataclass(frozen=True)
@@ -107,27 +93,21 @@ def parse(text: str, quantity: str) -> float:
         If it is no such quantity.
     """
     kind = QUANTITIES[quantity]
-    text = text.strip()
-    if len(text) > LONGEST:
-        raise _error("the text is too long", f"{text[:LONGEST]}…", kind, "write a number")
-    plain = text.replace("\u2212", "-")
-    if match := _NUMBER.fullmatch(plain):
+    plain = text.strip().replace("\u2212", "-")
+    match = _NUMBER.fullmatch(plain) if len(plain) <= LONGEST else None
+    if match:
         sign, digits, exponent, suffix = match.groups()
         power, unit = _suffix(text, suffix, kind)
-        power += int(exponent or 0)
-    elif match := _CODE.fullmatch(plain):
+        value = float(f"{sign}{digits}e{int(exponent or 0) + power}")
+    elif (match := _CODE.fullmatch(plain)) and len(plain) <= LONGEST:
         sign, whole, letter, fraction, unit = match.groups()
-        digits, power = f"{whole}.{fraction}", _letter(text, letter, unit, kind)
+        value = float(f"{sign}{whole or 0}.{fraction}e{_letter(text, letter, unit, kind)}")
     else:
         raise _unreadable(text, kind)
-    # One conversion of one decimal text rounds once; a multiplication would round again.
-    value = float(f"{sign}{digits}e{power}")
-    if unit == "dB" and quantity == "voltage-gain":
-        value = 10.0 ** (value / 20.0) if value < 6160.0 else inf
+    if quantity == "voltage-gain" and unit == "dB":
+        value = 10.0 ** (value / 20.0) if value < 1000.0 else float("inf")
     if not isfinite(value):
         raise _error("the number is too large", text, kind, "write a smaller number")
-    if not value and digits.strip("0."):
-        raise _error("the number is too small", text, kind, "write 0 or a number further from 0")
     return value
 
 
@@ -135,92 +115,63 @@ def _suffix(text: str, suffix: str, kind: Quantity) -> tuple[int, str]:
     """Return the power of ten of a prefix and a unit, and the unit."""
     if suffix in kind.units or (not suffix and kind.bare):
         return kind.units.get(suffix, 0), suffix
-    if kind.prefixed and suffix[:1] in _PREFIXES and suffix[1:] in ("", *kind.units):
-        return _PREFIXES[suffix[:1]], suffix[1:]
-    if suffix and suffix == kind.point:
+    prefix, unit = suffix[:1], suffix[1:]
+    if kind.prefixed and prefix in _PREFIXES and (not unit or unit in kind.units):
+        return _PREFIXES[prefix] + kind.units.get(unit, 0), unit
+    if kind.point and suffix == kind.point:
         return 0, kind.unit
     raise _misfit(text, suffix, kind)
 
 
 def _letter(text: str, letter: str, unit: str, kind: Quantity) -> int:
     """Return the power of ten of a code's letter."""
-    if not kind.prefixed or (letter != kind.point and letter not in _PREFIXES):
-        raise _misfit(text, letter, kind)
-    if unit and unit not in kind.units:
-        raise _misfit(text, unit, kind)
-    return 0 if letter == kind.point else _PREFIXES[letter]
+    if kind.prefixed and (not unit or unit in kind.units):
+        if letter == kind.point:
+            return 0
+        if letter in _PREFIXES:
+            return _PREFIXES[letter]
+        if letter in "RL":
+            raise _error(
+                f"the letter {letter} is ambiguous in {kind.noun}",
+                text,
+                kind,
+                "write it with a prefix and a unit; practice differs on what the letter means",
+            )
+    raise _misfit(text, letter + unit, kind)
 
 
 def _misfit(text: str, suffix: str, kind: Quantity) -> QuantityError:
-    """Say what is wrong with what follows a number, or with the letter of a code."""
-    if hint := _hint(text):
-        return _error(f"this is not {kind.noun}", text, kind, hint)
+    """Say what is wrong with a unit, without guessing what was meant."""
     if not suffix:
-        return _error("the unit is missing", text, kind, f"write {text} {kind.unit}")
-    if kind.prefixed and suffix in ("R", "L"):
-        fix = "write it with a prefix and a unit; practice differs on what the letter means"
-        return _error(f"the letter {suffix} is ambiguous in {kind.noun}", text, kind, fix)
-    unit, stated = _stated(suffix)
-    if stated is kind:
-        fix = "write the number with a point, one prefix and the unit"
-        return _error(f"{suffix!r} has no place in a code", text, kind, fix)
-    if stated:
-        problem = f"the unit {unit} does not fit {kind.noun}"
-        fix = f"write {kind.noun}, such as {kind.example}"
-        return _error(problem, f"{text}, {stated.noun}", kind, fix)
-    return _misspelt(text, suffix, kind)
-
-
-def _stated(suffix: str) -> tuple[str, Quantity | None]:
-    """Return a unit, and the quantity that it states if there is one."""
-    for kind in QUANTITIES.values():
-        if suffix in kind.units:
-            return suffix, kind
-        if kind.prefixed and suffix[0] in _PREFIXES and suffix[1:] in kind.units:
-            return suffix[1:], kind
-    return suffix, None
-
-
-def _misspelt(text: str, suffix: str, kind: Quantity) -> QuantityError:
-    """Say which prefix or unit is near, but never choose between milli and mega."""
-    prefixes = _PREFIXES if kind.prefixed else {"": 0}
-    known = [f"{prefix}{unit}" for unit in ("", *kind.units) for prefix in prefixes]
-    alike = [word for word in (*known, kind.point) if word.lower() == suffix.lower()]
-    if {"m", "M"} <= {word[0] for word in alike}:
-        unit = alike[0][1:]
-        fix = f"write m{unit} for milli or M{unit} for mega"
-        return _error("the prefix is not clear", text, kind, fix)
-    if not kind.prefixed and suffix[0] in _PREFIXES and suffix[1:] in ("", *kind.units):
-        fix = "write the number out, without a prefix"
-        return _error(f"{kind.noun} takes no prefix", text, kind, fix)
-    # A prefix is suggested only where its case is all that is wrong; a unit also where it is near.
-    near = alike[0] if alike else None if kind.prefixed else suggestion(suffix, kind.units)
-    fix = (
-        f"write {near}, if that is meant" if near else f"write {kind.noun}, such as {kind.example}"
-    )
+        return _error("the unit is missing", text, kind, f"write {text.strip()} {kind.unit}")
+    for other in QUANTITIES.values():
+        unit = suffix if suffix in other.units else suffix[1:]
+        if unit in other.units and unit not in kind.units:
+            problem = f"the unit {unit} does not fit {kind.noun}"
+            return _error(problem, text, kind, f"write {kind.noun}, such as {kind.example}")
+    for unit in kind.units:
+        if not kind.prefixed and suffix.lower().endswith(unit.lower()):
+            fix = f"write {kind.unit} without a prefix"
+            return _error(f"{kind.noun} takes no prefix", text, kind, fix)
+        if suffix.lower() == f"m{unit}".lower():
+            fix = f"write m{unit} for milli or M{unit} for mega"
+            return _error("the prefix is not clear", text, kind, fix)
+    if suffix in _PREFIXES:
+        return _error(f"{kind.noun} takes no prefix", text, kind, "write the number out")
+    fix = f"write {kind.noun}, such as {kind.example}"
     return _error(f"{suffix!r} is no unit of {kind.noun}", text, kind, fix)
 
 
 def _unreadable(text: str, kind: Quantity) -> QuantityError:
-    if not text:
+    if len(text) > LONGEST:
+        return _error("the text is too long", text[:LONGEST] + "…", kind, "write a number")
+    if not text.strip():
         return _error("the value is missing", "nothing", kind, f"write {kind.example}")
     if "," in text:
-        return _error("a number has no comma", text, kind, _without_comma(text))
-    fix = _hint(text) or f"write {kind.noun}, such as {kind.example}"
+        fix = f"write {text.strip().replace(',', '.')}, or leave the separator out"
+        return _error("a number has no comma", text, kind, fix)
+    fix = f"write {kind.noun}, such as {kind.example}"
     return _error(f"this is not {kind.noun}", text, kind, fix)
-
-
-def _hint(text: str) -> str | None:
-    return next((fix for sign, fix in _HINTS if sign.search(text)), None)
-
-
-def _without_comma(text: str) -> str:
-    """Say how to write a number whose comma may be a point or a separator."""
-    if text.count(",") > 1 or "." in text:
-        return "write a point for the decimal comma, and leave separators out"
-    point = text.replace(",", ".")
-    grouped = re.search(r",[0-9]{3}(?![0-9])", text)
-    return f"write {point} or {text.replace(',', '')}" if grouped else f"write {point}"
 
 
 def _error(problem: str, text: str, kind: Quantity, fix: str) -> QuantityError:
@@ -248,7 +199,7 @@ def rounded(value: float, quantity: str, digits: int = 4) -> str:
         return "none"
     if not isfinite(value):
         return "infinite" if value > 0.0 else "-infinite"
-    if quantity == "level" and abs(value) < 1e9:
+    if quantity == "level":
         return f"{round(value, 3) + 0.0:.3f} dB"
     return _written(Decimal(f"{value + 0.0:.{digits}g}"), QUANTITIES[quantity])
 
