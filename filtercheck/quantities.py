@@ -34,6 +34,14 @@ _PREFIXES = {"p": -12, "n": -9, "u": -6, "µ": -6, "μ": -6, "m": -3, "": 0}
 _PREFIXES |= {"k": 3, "K": 3, "M": 6, "G": 9, "T": 12}
 _SHOWN = {-12: "p", -9: "n", -6: "µ", -3: "m", 0: "", 3: "k", 6: "M", 9: "G", 12: "T"}
 
+# What to say of a text that is no number because of one sign in it.
+_HINTS = {
+    ":": "write one number, without a colon",
+    "_": "leave the underscores out",
+    "nan": "write a finite number",
+    "inf": "write a finite number",
+}
+
 _NUMBER = re.compile(
     r"([+-]?)([0-9]+\.?[0-9]*|\.[0-9]+)(?:[eE]([+-]?[0-9]{1,4}))?[ \u00a0]?([^0-9\s+-]*)",
     re.ASCII,
@@ -171,6 +179,7 @@ def _unreadable(text: str, kind: Quantity) -> QuantityError:
         fix = f"write {text.strip().replace(',', '.')}, or leave the separator out"
         return _error("a number has no comma", text, kind, fix)
     fix = f"write {kind.noun}, such as {kind.example}"
+    fix = next((hint for sign, hint in _HINTS.items() if sign in text), fix)
     return _error(f"this is not {kind.noun}", text, kind, fix)
 
 
