@@ -35,13 +35,19 @@ def render(run: Run) -> str:
 
 
 def _title(run: Run) -> str:
-    count = len(run.verdicts)
-    what = f"{count} requirement{'' if count == 1 else 's'} of {len(run.filters)} filter"
-    what += "" if len(run.filters) == 1 else "s"
-    name = f"{visible(run.board)}: " if run.board else ""
+    judged = (
+        f"{_count(len(run.verdicts), 'requirement')} of {_count(len(run.filters), 'filter')}: "
+        f"{sentences.counts(run)}"
+    )
     broken = len({fault.at.file for fault in run.faults})
-    rest = f"; {broken} file{'' if broken == 1 else 's'} could not be judged" if broken else ""
-    return f"{name}{what}: {sentences.counts(run)}{rest}"
+    parts = [judged] if run.verdicts else []
+    parts += [f"{_count(broken, 'file')} could not be judged"] if broken else []
+    name = f"{visible(run.board)}: " if run.board else ""
+    return name + "; ".join(parts or ["nothing to judge"])
+
+
+def _count(number: int, what: str) -> str:
+    return f"{number} {what}{'' if number == 1 else 's'}"
 
 
 def _row(cells: Iterable[str]) -> str:
@@ -77,7 +83,8 @@ def _details(verdict: Verdict) -> Iterator[str]:
     outcome = sentences.outcome(verdict)
     yield from wrapped(f"{outcome} {verdict.filter} {verdict.requirement}")
     says = [f"{verdict.kind} of {verdict.output}: {sentences.summary(verdict)}"]
-    says += [sentences.said(one) for one in verdict.findings[1:] if one.reached < 0.0]
+    beyond = [sentences.said(one) for one in verdict.findings[1:] if one.reached < 0.0]
+    says += [text for text in beyond if text != sentences.summary(verdict)]
     for text in says:
         yield from wrapped(text, "  ")
     yield from wrapped(f"at {visible(str(verdict.at))}", "  ")

@@ -36,8 +36,7 @@ def outcome(verdict: Verdict) -> str:
 def counts(run: Run) -> str:
     """Return how many requirements stand how: '3 fail, 1 undecided, 10 pass'."""
     outcomes = [verdict.outcome for verdict in run.verdicts]
-    parts = [f"{outcomes.count(one)} {one.value}" for one in ORDER if outcomes.count(one)]
-    return ", ".join(parts) or "nothing judged"
+    return ", ".join(f"{outcomes.count(one)} {one.value}" for one in ORDER if one in outcomes)
 
 
 def limit(finding: Finding) -> str:
@@ -72,6 +71,8 @@ def summary(verdict: Verdict) -> str:
 
 def said(finding: Finding) -> str:
     """Return a finding in one line."""
+    if isnan(finding.value):
+        return f"no {finding.subject}, {visible(finding.note)}"
     where = "" if finding.quantity == "frequency" else f" at {place(finding)}"
     text = f"{finding.subject} {value(finding)}{where}, {finding.sense} "
     text += f"{rounded(finding.limit, finding.quantity)}: margin {margin(finding)}"
