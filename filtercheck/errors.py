@@ -5,11 +5,13 @@ A requirement that does not hold is no exception but a verdict.
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
+from itertools import islice
 
 from filtercheck.position import Position
 from filtercheck.wording import visible
 
+MOST = 200  # errors of one file
 LONGEST = 160  # characters of a line that are shown; of another text, four times as many
 
 
@@ -90,10 +92,30 @@ class InputErrors(FiltercheckError):
 
     def __init__(self, errors: Sequence[InputError]) -> None:
         super().__init__(f"{len(errors)} errors")
-        self.errors = tuple(sorted(errors, key=lambda e: (e.at.file, e.at.line, e.at.column)))
+        self.errors = tuple(sorted(errors, key=_place))
 
     def __str__(self) -> str:
         return "\n\n".join(str(error) for error in self.errors)
+
+
+def _place(error: InputError) -> tuple[str, int, int]:
+    return error.at.file, error.at.line, error.at.column
+
+
+def bounded(errors: Iterable[InputError]) -> list[InputError]:
+    """Return the errors, but no more than anyone reads: a stranger's file may hold any number."""
+    first = list(islice(errors, MOST))
+    if len(first) == MOST:
+        first.append(
+            InputError(
+                f"more errors than {MOST} are not shown",
+                max(first, key=_place).at,
+                found=f"{MOST} errors up to here",
+                allowed="a file that is sound",
+                fix="mend these first",
+            )
+        )
+    return first
 
 
 class UsageError(FiltercheckError):

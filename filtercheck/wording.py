@@ -10,9 +10,11 @@ from __future__ import annotations
 import unicodedata
 from collections.abc import Iterable
 from difflib import get_close_matches
+from itertools import islice
 from textwrap import wrap
 
 WIDTH = 80  # columns of a terminal
+MOST_LISTED = 40  # words of a list
 
 # Control, format (bidirectional marks are among these), surrogate, private and unassigned
 # characters, and the two separators that some readers take for a line end.
@@ -46,11 +48,14 @@ def wrapped(text: str, indent: str = "") -> list[str]:
 
 def suggestion(word: str, allowed: Iterable[str]) -> str | None:
     """Return the allowed word that `word` was probably meant to be, if any is near."""
-    near = get_close_matches(word, list(allowed), n=1)
+    # Comparing takes time; nobody means one of the last of a thousand words.
+    near = get_close_matches(word, islice(allowed, 1000), n=1)
     return near[0] if near else None
 
 
 def listed(words: Iterable[str]) -> str:
     """Return the words as a list that can be read: 'a, b and c'."""
     *first, last = list(words) or ["nothing"]
+    if len(first) >= MOST_LISTED:
+        return f"{', '.join(first[:MOST_LISTED])} and {len(first) + 1 - MOST_LISTED} more"
     return f"{', '.join(first)} and {last}" if first else last

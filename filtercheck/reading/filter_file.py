@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator, Mapping
 from typing import cast
 
-from filtercheck.errors import InputError, InputErrors
+from filtercheck.errors import InputError, InputErrors, bounded
 from filtercheck.model.requirement import Requirement
 from filtercheck.model.subject import Connection, Name, Section, Subject
 from filtercheck.reading import schema
@@ -43,9 +43,8 @@ def subject(text: str, file: str) -> Subject:
         requirements=tuple(_requirements(source)),
         at=source.values["filter",],
     )
-    faults.extend(
-        loose_ends(found, {part: source.at("parts", part) for part in _keys(source, "parts")})
-    )
+    stated = {part: source.at("parts", part) for part in _keys(source, "parts")}
+    faults.extend(bounded(loose_ends(found, stated)))
     if faults:
         raise InputErrors(faults)
     return found

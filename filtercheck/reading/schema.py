@@ -16,7 +16,7 @@ from typing import Any
 from jsonschema import Draft7Validator, ValidationError
 from jsonschema.validators import extend
 
-from filtercheck.errors import InputErrors, QuantityError
+from filtercheck.errors import InputErrors, QuantityError, bounded
 from filtercheck.model.requirement import Setting
 from filtercheck.quantities import parse, rounded
 from filtercheck.reading.complaints import complaints
@@ -42,11 +42,11 @@ def check(source: Source, name: str) -> None:
     InputErrors
         All that is wrong, each at its place.
     """
-    found = [
+    found = bounded(
         complaint
         for error in _validator(name).iter_errors(source.data)
         for complaint in complaints(error, source)
-    ]
+    )
     if found:
         raise InputErrors(found)
 

@@ -54,6 +54,36 @@ def test_brackets_without_end_are_refused() -> None:
     assert judged("a: " + "[" * 500_000).faults
 
 
+@pytest.mark.parametrize(
+    "junk",
+    [
+        "".join(f"  X{i}: {{resistance: 1k}}\n" for i in range(30_000)),
+        "".join(f"  X{i}: {{resistence: 1k}}\n" for i in range(30_000)),
+        "".join(f"key{i}: x\n" for i in range(60_000)),
+    ],
+    ids=["unused parts", "misspelt parts", "unknown keys"],
+)
+def test_no_more_errors_than_anyone_reads(junk: str) -> None:
+    run = judged(SOUND.replace("outputs:", f"{junk}outputs:", 1))
+
+    assert len(run.faults) == 201
+    assert run.faults[-1].problem == "more errors than 200 are not shown"
+    assert max(len(str(fault)) for fault in run.faults) < 3000
+
+
+def test_ten_thousand_unknown_names_are_no_hang() -> None:
+    nodes = "".join(f"  Y{i}: [in, out]\n" for i in range(10_000))
+    parts = "".join(f"  X{i}: {{resistance: 1k}}\n" for i in range(10_000))
+    run = judged(
+        f"format: filtercheck-filter/1\nfilter: f\nconnect:\n{nodes}parts:\n{parts}"
+        "outputs: {out: out}\nrequirements:\n"
+        "  A: {kind: gain, output: out, band: [0, 1], max: 0 dB, verify: nominal}\n"
+    )
+
+    assert len(run.faults) == 201
+    assert run.faults[0].problem == "there is no part 'Y0'"
+
+
 def test_names_that_steer_a_terminal_are_shown_as_codes() -> None:
     run = judged(SOUND.replace("sound", "'a\u202eb\u2028c'"))
     shown = str(run.faults[0])
