@@ -8,6 +8,7 @@ and eighth of it.
 
 from __future__ import annotations
 
+from bisect import bisect_left, bisect_right
 from fractions import Fraction
 from functools import cache
 from math import isfinite
@@ -41,9 +42,9 @@ def is_member(value: float, series: str) -> bool:
 
 
 def neighbours(value: float, series: str) -> tuple[float, float]:
-    """Return the members of the series next below and next above a value."""
+    """Return the members next below and next above a value; 0 or infinity beyond all floats."""
     near = _near(value, series)
-    return max(m for m in near if m < value), min(m for m in near if m > value)
+    return near[bisect_left(near, value) - 1], near[bisect_right(near, value)]
 
 
 def nearest(value: float, series: str) -> float:
@@ -51,18 +52,23 @@ def nearest(value: float, series: str) -> float:
     if is_member(value, series):
         return value
     below, above = neighbours(value, series)
+    if not isfinite(above):
+        return below
     return above if Fraction(value) ** 2 > Fraction(below) * Fraction(above) else below
 
 
-def _near(value: float, series: str) -> list[float]:
-    """Return the members of the value's decade, and one on either side of it."""
+def _near(value: float, series: str) -> tuple[float, ...]:
+    """Return the members of the value's decade and of one on either side, rising."""
     if not (isfinite(value) and value > 0.0):
         raise ValueError(f"a preferred value is positive: {value}")
+    exponent = int(f"{value:e}".partition("e")[2])
+    # Whole decades, because several members may round to one of the smallest floats.
+    return tuple(m for e in (-1, 0, 1) for m in _decade(series, exponent + e))
+
+
+@cache
+def _decade(series: str, exponent: int) -> tuple[float, ...]:
+    """Return the members from 10^exponent up to ten times that, each rounded once."""
     decade = members(series)
-    exponent = int(f"{value:e}".partition("e")[2]) - len(str(decade[0])) + 1
-    inside = [float(f"{member}e{exponent}") for member in decade]
-    return [
-        float(f"{decade[-1]}e{exponent - 1}"),
-        *inside,
-        float(f"{decade[0]}e{exponent + 1}"),
-    ]
+    shift = exponent - len(str(decade[0])) + 1
+    return tuple(float(f"{member}e{shift}") for member in decade)

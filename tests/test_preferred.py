@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 import math
+import sys
+from collections.abc import Callable
 from pathlib import Path
 
 import pytest
@@ -66,12 +68,39 @@ def test_nearest_is_nearest_by_ratio(value: float, series: str) -> None:
         assert above == min(m for m in near if m > value)
 
 
-@pytest.mark.parametrize("value", [0.0, -1.0, math.inf, math.nan])
-def test_values_that_cannot_be_preferred(value: float) -> None:
+def test_a_value_a_hair_below_a_decade_has_neighbours_in_both() -> None:
+    # Read off the table of E24: 9.1 is its last member, 10 the first of the next decade.
+    assert neighbours(9.9999999999, "E24") == (9.1, 10.0)
+    assert neighbours(10.0, "E24") == (9.1, 11.0)
+
+
+@pytest.mark.parametrize("series", SERIES)
+def test_the_ends_of_the_floats(series: str) -> None:
+    """No member above the largest floats is a float; the smallest float is itself a member."""
+    decade = TABLES[series]["values"]
+    inside = [float(f"{member}e{309 - len(str(decade[0]))}") for member in decade]
+    top = max(member for member in inside if math.isfinite(member))
+
+    assert neighbours(sys.float_info.max, series) == (top, math.inf)
+    assert nearest(sys.float_info.max, series) == top
+    for steps in range(1, 200):
+        value = steps * 5e-324
+        below, above = neighbours(value, series)
+        assert below < value < above
+        assert is_member(nearest(value, series), series)
+
+
+@pytest.mark.parametrize("value", [0.0, -1.0, math.inf, -math.inf, math.nan])
+@pytest.mark.parametrize("asked", [is_member, neighbours, nearest])
+def test_values_that_cannot_be_preferred(
+    asked: Callable[[float, str], object], value: float
+) -> None:
     with pytest.raises(ValueError, match="positive"):
-        nearest(value, "E96")
+        asked(value, "E96")
 
 
 def test_a_series_that_is_none() -> None:
     with pytest.raises(ValueError, match="no series E95"):
         members("E95")
+    with pytest.raises(ValueError, match="no series E95"):
+        nearest(1.0, "E95")
