@@ -3,8 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
+from dataclasses import replace
 
 from filtercheck.errors import InputError, InputErrors
+from filtercheck.model.part import Figure, OpAmp
 from filtercheck.model.requirement import Requirement
 from filtercheck.model.subject import Subject
 from filtercheck.model.verdict import Judged, Outcome, Verdict, decide
@@ -15,6 +17,8 @@ from filtercheck.quantities import rounded
 from filtercheck.requirements import KINDS
 from filtercheck.requirements.kind import Wanted
 from filtercheck.wiring.wired import responses, wired
+
+FAST = Figure(1e12, 1e12, 1e12)  # a gain-bandwidth far above that of any part [Hz]
 
 
 def judge(subject: Subject) -> Judged:
@@ -33,7 +37,7 @@ def judge(subject: Subject) -> Judged:
     if faults:
         raise InputErrors(faults)
     reached, whole = responses(subject, wiring)
-    standing = _standing(whole)
+    standing = _standing(whole) or _standing(_whole_with_real(subject))
     curves = {output: Curve(response) for output, response in reached.items()}
     verdicts = (
         _verdict(subject, requirement, wanted[requirement.name], curves, standing)
@@ -46,6 +50,22 @@ def judge(subject: Subject) -> Judged:
         tuple(subject.parts.values()),
         tuple(verdicts),
     )
+
+
+def _whole_with_real(subject: Subject) -> Response:
+    """Return the response through the whole with op-amps that are fast, but not infinitely so.
+
+    The equations of an ideal op-amp cannot tell its inputs apart: exchanged by mistake, they
+    give the same response, and only a finite bandwidth shows that the loop runs away.
+    """
+    real = {
+        name: replace(part, gain_bandwidth=FAST)
+        if isinstance(part, OpAmp) and part.gain_bandwidth is None
+        else part
+        for name, part in subject.parts.items()
+    }
+    fast = replace(subject, parts=real)
+    return responses(fast, wired(fast))[1]
 
 
 def _wanted(subject: Subject) -> tuple[dict[str, Wanted], list[InputError]]:

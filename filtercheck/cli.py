@@ -112,7 +112,7 @@ def _settings(parser: argparse.ArgumentParser) -> None:
 
 def _check(arguments: argparse.Namespace) -> int:
     targets = {"junit": arguments.junit, "evidence": arguments.evidence}
-    files = {name: Path(target) for name, target in targets.items() if target}
+    files = {name: Path(target) for name, target in targets.items() if target is not None}
     _clear(list(files.values()), arguments.paths)
     return _judge(arguments.paths, arguments.settings, files)
 
@@ -181,6 +181,8 @@ def _demo(arguments: argparse.Namespace) -> int:
 def _clear(targets: Sequence[Path], paths: Sequence[str]) -> None:
     """Refuse to write over a file under check, or two reports into one file."""
     places = [target.resolve() for target in targets]
+    if any(not target.name for target in targets):
+        raise UsageError("a report needs the name of a file")
     if len(set(places)) < len(places):
         raise UsageError("two reports cannot be written to the same file")
     for target in places:

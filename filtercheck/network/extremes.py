@@ -75,6 +75,8 @@ class Slope:
 def slope(response: Response) -> Slope:
     """Return the derivative of the gain of `response`, resolved about all its roots."""
     roots = np.concatenate([response.zeros, response.poles])
+    # A root so far away that it is lost to rounding, at 0 or infinity, bends nothing.
+    roots = roots[np.isfinite(roots) & (roots != 0)]
     if not len(roots):
         empty = np.empty(0)
         return Slope(empty, empty, np.empty((0, NODES)), empty)
@@ -88,7 +90,8 @@ def slope(response: Response) -> Slope:
     # Interpolation at the points of the first kind is a discrete cosine transform.
     transform = 2.0 / NODES * chebyshev.chebvander(points, NODES - 1)
     transform[:, 0] /= 2.0
-    nulls = place[: len(response.zeros)]
+    zeros = response.zeros[np.isfinite(response.zeros) & (response.zeros != 0)]
+    nulls = place[: len(zeros)]
     return Slope(left, right, values @ transform, nulls)
 
 

@@ -41,8 +41,9 @@ def content(file: File) -> tuple[str, str]:
             if not S_ISREG(os.fstat(stream.fileno()).st_mode):
                 raise _refused(file, "is no ordinary file", "a device, a pipe or a folder")
             data = stream.read(LARGEST + 1)
-    except OSError as error:
-        raise _refused(file, "cannot be read", error.strerror or "an error") from error
+    except (OSError, RuntimeError) as error:  # a loop of links is a RuntimeError
+        found = getattr(error, "strerror", None) or "a loop of links, or an error"
+        raise _refused(file, "cannot be read", found) from error
     if len(data) > LARGEST:
         raise _refused(file, "is too large", f"more than {LARGEST:,} bytes")
     try:

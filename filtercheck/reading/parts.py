@@ -96,6 +96,14 @@ def _preferred(designator: str, data: Keys, source: Source) -> Passive:
         raise InputError(
             error.problem, at, found=error.found, allowed=error.allowed, fix=error.fix
         ) from error
+    if not ideal > 0.0:
+        raise InputError(
+            f"the ideal value of {designator} is not positive",
+            at,
+            found=str(data["ideal"]),
+            allowed="a value above 0",
+            fix="mend the value",
+        )
     series = str(data["series"])
     return Passive(
         designator,
