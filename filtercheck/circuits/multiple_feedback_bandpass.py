@@ -1,14 +1,16 @@
 """Multiple-feedback band-pass section, second order, inverting.
 
-                 +------- C1 --------+
-                 |                   |
-                 |         +-- R2 ---+
-                 |         |         |
-    in --- Rin --+-- C2 ---+--(-)    |
-                 |               A >-+--- bandpass
-                 Rg    Rb ----(+)
-                 |     |
-              ground ground
+                +------- C1 -------+
+                |                  |
+                |        +--- R2 --+
+                |        |         |
+    in -- Rin --+-- C2 --+-(-)     |
+                |             A >--+-- bandpass
+                Rg       +-(+)
+                |        |
+              ground     Rb
+                         |
+                       ground
 
     circuit: multiple-feedback-bandpass
     fit: {Rin: , C1: , C2: , R2: , A: }

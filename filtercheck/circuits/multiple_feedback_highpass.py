@@ -1,14 +1,16 @@
 """Multiple-feedback high-pass section, second order, inverting.
 
-                 +------- Cf --------+
-                 |                   |
-                 |         +-- R2 ---+
-                 |         |         |
-    in --- Cin --+-- C2 ---+--(-)    |
-                 |               A >-+--- highpass
-                 R1    Rb ----(+)
-                 |     |
-              ground ground
+                +------- Cf -------+
+                |                  |
+                |        +--- R2 --+
+                |        |         |
+    in -- Cin --+-- C2 --+-(-)     |
+                |             A >--+-- highpass
+                R1       +-(+)
+                |        |
+              ground     Rb
+                         |
+                       ground
 
     circuit: multiple-feedback-highpass
     fit: {Cin: , Cf: , C2: , R1: , R2: , A: }

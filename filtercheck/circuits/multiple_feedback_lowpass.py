@@ -1,14 +1,16 @@
 """Multiple-feedback low-pass section, second order, inverting.
 
-                 +------- Rf --------+
-                 |                   |
-                 |         +-- C2 ---+
-                 |         |         |
-    in --- Rin --+-- R2 ---+--(-)    |
-                 |               A >-+--- lowpass
-                 C1    Rb ----(+)
-                 |     |
-              ground ground
+                +------- Rf -------+
+                |                  |
+                |        +--- C2 --+
+                |        |         |
+    in -- Rin --+-- R2 --+-(-)     |
+                |             A >--+-- lowpass
+                C1       +-(+)
+                |        |
+              ground     Rb
+                         |
+                       ground
 
     circuit: multiple-feedback-lowpass
     fit: {Rin: , Rf: , R2: , C1: , C2: , A: }

@@ -1,10 +1,10 @@
 """One-pole high-pass section, non-inverting, gain +1.
 
-    in --- C ---+---(+)
-                |      A >---+--- highpass
-                R   +-(-)    |
-                |   |        |
-             ground +--------+
+    in -- C --+--------(+)
+              |           A >--+-- highpass
+              R      +-(-)     |
+              |      |         |
+            ground   +---------+
 
     circuit: one-pole-highpass
     fit: {C: , R: , A: }

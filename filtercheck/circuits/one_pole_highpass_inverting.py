@@ -1,10 +1,10 @@
 """One-pole high-pass section, inverting, gain -Rf/Rin.
 
-                       +--- Rf ---+
-                       |          |
-    in -- C --- Rin ---+--(-)     |
-                             A >--+--- highpass
-    ground ---- Rb --------(+)
+                      +--- Rf ---+
+                      |          |
+    in -- C --- Rin --+--(-)     |
+                            A >--+--- highpass
+    ground ---- Rb ------(+)
 
     circuit: one-pole-highpass-inverting
     fit: {C: , Rin: , Rf: , A: }

@@ -1,10 +1,10 @@
 """One-pole low-pass section, non-inverting, gain +1.
 
-    in --- R ---+---(+)
-                |      A >---+--- lowpass
-                C   +-(-)    |
-                |   |        |
-             ground +--------+
+    in -- R --+--------(+)
+              |           A >--+-- lowpass
+              C      +-(-)     |
+              |      |         |
+            ground   +---------+
 
     circuit: one-pole-lowpass
     fit: {R: , C: , A: }

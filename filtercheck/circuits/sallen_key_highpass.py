@@ -1,16 +1,16 @@
 """Sallen-Key high-pass section, second order, with gain.
 
-                +----------- R1 ---------+
-                |                        |
-    in --- C1 --+-- C2 --+----(+)        |
-                         |       A >-----+--- highpass
-                         R2  +-(-)       |
-                         |   |           |
-                      ground +---- Rf ---+
-                             |
-                             Rg
-                             |
-                           ground
+               +----------- R1 ----------+
+               |                         |
+    in -- C1 --+-- C2 --+--------(+)     |
+                        |           A >--+-- highpass
+                        |      +-(-)     |
+                        R2     |         |
+                        |      +--- Rf --+
+                      ground   |
+                               Rg
+                               |
+                             ground
 
     circuit: sallen-key-highpass
     fit: {C1: , C2: , R1: , R2: , A: }

@@ -1,16 +1,16 @@
 """Sallen-Key low-pass section, second order, with gain.
 
-                +----------- C1 ---------+
-                |                        |
-    in --- R1 --+-- R2 --+----(+)        |
-                         |       A >-----+--- lowpass
-                         C2  +-(-)       |
-                         |   |           |
-                      ground +---- Rf ---+
-                             |
-                             Rg
-                             |
-                           ground
+               +----------- C1 ----------+
+               |                         |
+    in -- R1 --+-- R2 --+--------(+)     |
+                        |           A >--+-- lowpass
+                        |      +-(-)     |
+                        C2     |         |
+                        |      +--- Rf --+
+                      ground   |
+                               Rg
+                               |
+                             ground
 
     circuit: sallen-key-lowpass
     fit: {R1: , R2: , C1: , C2: , A: }

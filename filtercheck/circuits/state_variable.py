@@ -1,19 +1,23 @@
 """State-variable section of three op-amps, input at the inverting summing node.
 
-                 +----------------- Rlp --------------------------------+
-                 |    +--- Rhp ---+                                     |
-                 |    |           |         +-- C1 --+      +-- C2 --+  |
-                 |    |           |         |        |      |        |  |
-    in -- Rin ---+----+--(-)      |         |        |      |        |  |
-                          A0 >----+-- R1 ---+-(-)    +- R2 -+-(-)    |  |
-                  +------(+)      |           A1 >---+        A2 >---+--+
-                  |           highpass   +---(+)     |   +---(+)     |
-                  |                      |       bandpass|        lowpass
-                  +-- Rbp ---------------)-----------+   |
-                  |                     Rb1             Rb2
-                  Rg                     |               |
-                  |                      |               |
-                ground                 ground          ground
+                +----------------------- Rlp ----------------------+
+                |                                                  |
+                +--- Rhp --+        +--- C1 ---+        +--- C2 ---+
+                |          |        |          |        |          |
+    in -- Rin --+-(-)      |        |          |        |          |
+                     A0 >--+-- R1 --+-(-)      |        |          |
+                +-(+)      |             A1 >--+-- R2 --+-(-)      |
+                |       highpass    +-(+)      |             A2 >--+-- lowpass
+                |                   |          |        +-(+)
+                |                  Rb1         |        |
+                |                   |          |       Rb2
+                |                 ground       |        |
+                |                              |      ground
+                +------------- Rbp ------------+-- bandpass
+                |
+                Rg
+                |
+              ground
 
     circuit: state-variable
     fit: {Rin: , Rhp: , Rlp: , Rbp: , Rg: ,

@@ -1,20 +1,24 @@
 """State-variable section of three op-amps, input at the non-inverting summing
 node.
 
-                 +----------------- Rlp --------------------------------+
-                 |    +--- Rhp ---+                                     |
-                 |    |           |         +-- C1 --+      +-- C2 --+  |
-                 |    |           |         |        |      |        |  |
-                 +----+--(-)      |         |        |      |        |  |
-                          A0 >----+-- R1 ---+-(-)    +- R2 -+-(-)    |  |
-    in -- Rin ----+------(+)      |           A1 >---+        A2 >---+--+
-                  |           highpass   +---(+)     |   +---(+)     |
-                  |                      |       bandpass|        lowpass
-                  +-- Rbp ---------------)-----------+   |
-                  |                     Rb1             Rb2
-                  Rg                     |               |
-                  |                      |               |
-                ground                 ground          ground
+                +----------------------- Rlp ----------------------+
+                |                                                  |
+                +--- Rhp --+        +--- C1 ---+        +--- C2 ---+
+                |          |        |          |        |          |
+                +-(-)      |        |          |        |          |
+                     A0 >--+-- R1 --+-(-)      |        |          |
+    in -- Rin --+-(+)      |             A1 >--+-- R2 --+-(-)      |
+                |       highpass    +-(+)      |             A2 >--+-- lowpass
+                |                   |          |        +-(+)
+                |                  Rb1         |        |
+                |                   |          |       Rb2
+                |                 ground       |        |
+                |                              |      ground
+                +------------- Rbp ------------+-- bandpass
+                |
+                Rg
+                |
+              ground
 
     circuit: state-variable-noninverting
     fit: {Rin: , Rbp: , Rhp: , Rlp: ,

@@ -13,6 +13,8 @@ from filtercheck.network.response import Response
 
 Band = tuple[float, float]  # [Hz]; the lower end may be 0, the upper end infinite
 EVERYWHERE: Band = (0.0, np.inf)
+# No crossing is sought beyond; powers of s as high as those of any filter stay finite there.
+FARTHEST: Band = (1e-21, 1e21)
 
 
 @dataclass(frozen=True)
@@ -75,6 +77,8 @@ class Curve:
             above = self._toward(above, below, level_db, fallen=False)
         if below == 0.0 or np.isinf(below):
             below = self._toward(below, above, level_db, fallen=True)
+        if not FARTHEST[0] < below < FARTHEST[1]:
+            return None  # the level is that of the asymptote itself, which is never reached
         return self._bisected(above, below, level_db)
 
     def _toward(self, end_hz: float, start_hz: float, level_db: float, *, fallen: bool) -> float:
@@ -82,7 +86,7 @@ class Curve:
         the level; start from 1 Hz where both are ends."""
         step = 1e-3 if end_hz == 0.0 else 1e3
         here = start_hz if 0.0 < start_hz < np.inf else 1.0
-        while (self.gain_db(here) <= level_db) != fallen and 1e-280 < here < 1e280:
+        while (self.gain_db(here) <= level_db) != fallen and FARTHEST[0] < here < FARTHEST[1]:
             here *= step
         return here
 

@@ -1,7 +1,8 @@
 """Why a network has no solution: the element or node to blame, found by trying repairs.
 
-A node floats exactly when a resistor from it to ground would make the equations solvable;
-an amplifier is to blame exactly when making it real (finite gain) would.
+A node floats at 0 Hz exactly when a resistor from it to ground takes a factor s out of every
+polynomial; an amplifier is to blame exactly when making it real (finite gain), after those
+before it, makes the equations solvable. There may be several of either: the first is named.
 """
 
 from __future__ import annotations
@@ -29,6 +30,7 @@ def check(network: Network, observed: frozenset[str]) -> None:
     """
     _check_sources(network)
     _check_connections(network, observed)
+    _check_islands(network)
     if not network_functions(network).denominator.terms:
         raise _unsolvable(network)
     _check_direct_current(network)
@@ -64,37 +66,44 @@ def _check_connections(network: Network, observed: frozenset[str]) -> None:
                 )
 
 
-def _unsolvable(network: Network) -> NetworkError:
-    for element in network.elements:
-        if isinstance(element, Amplifier) and _solvable(_made_real(network, element)):
-            return NetworkError(
-                f"the loop of {element.name} has no solution",
-                culprit=element.name,
-                found=f"{element.name} is ideal and nothing feeds its output back to its inputs",
-                allowed="an ideal amplifier inside a feedback loop",
-                fix=f"connect its output to its inverting input, or give {element.name} "
-                "an open_loop_gain",
-            )
+def _check_islands(network: Network) -> None:
+    """Refuse nodes that no passive part connects to ground, to the source or to an output."""
+    reached = {INPUT, GROUND} | network.stiff
+    passive = [set(e.nodes) for e in network.elements if not isinstance(e, Amplifier)]
+    while grown := [ends for ends in passive if ends & reached and ends - reached]:
+        reached = reached.union(*grown)
     for node in network.nodes:
-        if _solvable(_tied_down(network, node)):
-            return _floating(network, node)
-    names = [element.name for element in network.elements]
+        if node not in reached:
+            raise _floating(network, node)
+
+
+def _unsolvable(network: Network) -> NetworkError:
+    """Make the amplifiers real, one after the other; the one that mends it all is to blame.
+
+    With all of them real and no islands, the passive parts alone determine every voltage.
+    """
+    amplifiers = [e for e in network.elements if isinstance(e, Amplifier)]
+    mended, blamed = network, amplifiers[0]
+    for blamed in amplifiers:
+        mended = _made_real(mended, blamed)
+        if _solvable(mended):
+            break
     return NetworkError(
-        "the network has no solution",
-        culprit=names[0],
-        found="equations without a unique solution, whichever single part is mended",
-        allowed="a network in which every node is reached from the source",
-        fix="check the nodes of " + ", ".join(names),
+        f"the loop of {blamed.name} has no solution",
+        culprit=blamed.name,
+        found=f"{blamed.name} is ideal and nothing feeds its output back to its inputs",
+        allowed="an ideal amplifier inside a feedback loop",
+        fix=f"connect its output to its inverting input, or give {blamed.name} an open_loop_gain",
     )
 
 
 def _check_direct_current(network: Network) -> None:
     """Refuse nodes whose voltage at 0 Hz is left open, as between two capacitors."""
-    functions = network_functions(network)
-    if not _all_vanish_at_zero(functions):
+    vanishing = _common_power(network_functions(network))
+    if not vanishing:
         return
     for node in network.nodes:
-        if not _all_vanish_at_zero(network_functions(_tied_down(network, node))):
+        if _common_power(network_functions(_tied_down(network, node))) < vanishing:
             raise _floating(network, node)
 
 
@@ -129,12 +138,10 @@ def _tied_down(network: Network, node: str) -> Network:
     return Network((*network.elements, Resistor(f"leak at {node}", node, GROUND)))
 
 
-def _all_vanish_at_zero(functions: Functions) -> bool:
-    return all(
-        _lowest_power(polynomial) > 0
-        for polynomial in (functions.denominator, *functions.numerators.values())
-        if polynomial.terms
-    )
+def _common_power(functions: Functions) -> int:
+    """Return the powers of s that the denominator and all numerators have in common."""
+    polynomials = (functions.denominator, *functions.numerators.values())
+    return functions.cancelled + min(_lowest_power(p) for p in polynomials if p.terms)
 
 
 def _lowest_power(polynomial: Polynomial) -> int:

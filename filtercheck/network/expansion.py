@@ -51,6 +51,7 @@ class Functions:
 
     denominator: Polynomial
     numerators: Mapping[str, Polynomial]
+    cancelled: int  # powers of s among the common symbols that were divided out
 
 
 @lru_cache(maxsize=512)
@@ -82,7 +83,8 @@ def network_functions(network: Network) -> Functions:
         name: Polynomial(tuple(known), {mask & ~common: c for mask, c in whole[name].items()})
         for name in (*network.nodes, INPUT)
     }
-    return Functions(ratio[INPUT], ratio)
+    cancelled = sum(symbol.dynamic and common >> i & 1 for i, symbol in enumerate(known))
+    return Functions(ratio[INPUT], ratio, cancelled)
 
 
 def _common(polynomials: Iterable[Terms]) -> int:

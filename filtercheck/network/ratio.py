@@ -130,14 +130,21 @@ def log_derivative(coefficients: Real, x: Complex) -> Complex:
 
 
 def _roots(coefficients: Real) -> Complex:
-    """Return the roots; each distinct root is right to a few roundings of its size.
+    """Return the roots; each is as right as the coefficients' own roundings allow.
 
-    The coefficients are first scaled so that the first and the last are alike: roots that
-    lie many decades apart then keep their own accuracy through the balanced companion matrix.
+    The coefficients are first scaled so that the first and the last are alike. The eigenvalues
+    of the companion matrix are right to a rounding of the largest; where roots lie many decades
+    apart that is not enough for the small ones, hence the steps of Newton's method.
     """
     degree = len(coefficients) - 1
     if degree < 1:
         return np.empty(0, complex)
     scale = abs(coefficients[0] / coefficients[-1]) ** (1.0 / degree)
     balanced = coefficients * scale ** np.arange(degree + 1)
-    return np.asarray(np.roots(balanced[::-1]) * scale, dtype=complex)
+    roots = np.roots(balanced[::-1]).astype(complex)
+    for _ in range(3):
+        with np.errstate(divide="ignore", invalid="ignore"):
+            step = 1.0 / log_derivative(balanced, roots)
+        # A longer step would not be a correction: the root is a multiple one.
+        roots -= np.where(np.abs(step) < 1e-3 * np.abs(roots), step, 0.0)
+    return np.asarray(roots * scale)

@@ -68,7 +68,7 @@ class Response:
                 total[finite] += 20.0 * (np.log10(size[0]) - np.log10(size[1]))
             if self.order:
                 total[finite] += 20.0 * self.order * np.log10(np.abs(s))
-                total[finite] -= 20.0 * sum(f.order * np.log10(f.omega0) for f in self.factors)
+            total[finite] -= 20.0 * sum(f.order * np.log10(f.omega0) for f in self.factors)
         total[~finite] = self._gain_db_at_infinity()
         return total
 

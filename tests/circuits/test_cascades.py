@@ -8,6 +8,7 @@ makes a real pole.
 from __future__ import annotations
 
 from collections.abc import Callable
+from math import factorial
 
 import numpy as np
 import pytest
@@ -35,7 +36,7 @@ def section(circuit: str, output: str, value: dict[str, float]) -> Response:
     )
     functions = network_functions(Network(elements))
     values = {
-        s: 1.0 / value.get(s.element, 1.0) if s.kind == "conductance" else 1.0
+        s: 1.0 / value.get(s.element, 1.0) if s.kind == "conductance" else value.get(s.element, 1.0)
         for s in functions.denominator.symbols
     }
     numerator = functions.numerators[known.outputs[output]]
@@ -105,14 +106,42 @@ def test_cascades_reproduce_the_prototypes(
     np.testing.assert_allclose(got, reference_db(np.asarray(poles)), rtol=0, atol=1e-9)
 
 
-@pytest.mark.parametrize("order", range(2, 9))
-def test_butterworth_high_pass_mirrors_the_low_pass(order: int) -> None:
-    # |H|^2 = w^2n/(1 + w^2n); sections of even order only, from the high-pass outputs.
-    if order % 2:
-        order += 1
-    _, poles, _ = signal.buttap(order)
-    upper = poles[poles.imag > 0]
-    built = product([state_variable("highpass", 1 / (-2 * p.real)) for p in upper])
+def test_resistors_and_capacitors_move_the_frequency_alike() -> None:
+    by_resistors = state_variable("lowpass", 5.0, 2.0)
+    halved = {"Rbp": 3 * 5.0 - 1, "C1": 0.5, "C2": 0.5}
+    by_capacitors = section("state-variable", "lowpass", halved)
+    freq_hz = OMEGA / (2 * np.pi)
 
+    np.testing.assert_allclose(
+        by_capacitors.gain_db(freq_hz), by_resistors.gain_db(freq_hz), rtol=0, atol=1e-9
+    )
+
+
+@pytest.mark.parametrize("order", range(1, 11))
+def test_butterworth_high_pass_mirrors_the_low_pass(order: int) -> None:
+    _, poles, _ = signal.buttap(order)
+    sections = [state_variable("highpass", 1 / (-2 * p.real)) for p in poles if p.imag > 1e-9]
+    if order % 2:
+        sections.append(section("one-pole-highpass", "highpass", {}))
+    built = product(sections)
+
+    # |H|^2 = w^2n/(1 + w^2n), the definition of a Butterworth response.
     want = -10 * np.log10(1 + OMEGA ** (-2.0 * order))
     np.testing.assert_allclose(built.gain_db(OMEGA / (2 * np.pi)), want, rtol=0, atol=1e-9)
+
+
+@pytest.mark.parametrize("order", range(1, 9))
+def test_bessel_cascades_have_the_flattest_delay(order: int) -> None:
+    # By hand from H = B(0)/B(s) with the reverse Bessel polynomial B: the delay of the phase is
+    # 1 - w^2n/|B(jw)|^2 seconds; for n = 2, B = s^2 + 3 s + 3, it is (9 + 3 w^2)/(9 + 3 w^2 + w^4).
+    _, poles, _ = signal.besselap(order, norm="delay")
+    built = cascade(np.asarray(poles))
+    bessel = [
+        factorial(2 * order - k) / (2 ** (order - k) * factorial(k) * factorial(order - k))
+        for k in range(order, -1, -1)
+    ]
+    omega = np.geomspace(1e-3, 1e2, 301)
+
+    want = 1 - omega ** (2.0 * order) / np.abs(np.polyval(bessel, 1j * omega)) ** 2
+    got = built.group_delay_s(omega / (2 * np.pi))
+    np.testing.assert_allclose(got, want, rtol=1e-9, atol=1e-12)

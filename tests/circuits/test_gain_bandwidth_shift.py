@@ -8,7 +8,6 @@ left must fall with the square of eps.
 from __future__ import annotations
 
 from collections.abc import Callable
-from math import pi, sqrt
 from pathlib import Path
 from typing import Any
 
@@ -19,9 +18,12 @@ from filtercheck.circuits import CIRCUITS
 from filtercheck.network.elements import Amplifier, Capacitor, Element, Network, Resistor
 from filtercheck.network.expansion import network_functions
 from filtercheck.network.ratio import ratio
+from filtercheck.network.response import Response
+from filtercheck.network.stability import instability
 
 REFERENCE = Path(__file__).parent.parent / "reference" / "gbw_first_order.yaml"
-FORMULAS: dict[str, dict[str, Any]] = yaml.safe_load(REFERENCE.read_text("utf-8"))["formulas"]
+READ: dict[str, dict[str, Any]] = yaml.safe_load(REFERENCE.read_text("utf-8"))
+FORMULAS = READ["formulas"]
 
 Values = dict[str, float]
 TOW_THOMAS: tuple[Element, ...] = (
@@ -79,47 +81,90 @@ DESIGNS: dict[str, tuple[tuple[Element, ...], Callable[[float], Values]]] = {
 }
 
 
-def pole_pair(topology: str, q: float, eps: float) -> tuple[float, float]:
-    """Return w0 and Q of the pole pair next to w = 1."""
-    elements, design = DESIGNS[topology]
+def with_bandwidth(elements: tuple[Element, ...], value: Values, eps: float) -> Response:
+    """Return 1 as N/D with the poles of these elements, GBW = w0/eps in every op-amp."""
     functions = network_functions(Network(elements))
-    value = design(q)
     values = {}
     for symbol in functions.denominator.symbols:
         number = value.get(symbol.element, 1.0)
         values[symbol] = {"conductance": 1 / number, "inverse bandwidth": eps}.get(
             symbol.kind, number
         )
-    exact = ratio(functions.denominator, functions.denominator, values)
-    pair = min(
-        (p for p in exact.poles if p.imag > 0), key=lambda p: abs(abs(p) - 1) + abs(p.imag - 1)
-    )
+    return Response((ratio(functions.denominator, functions.denominator, values),))
+
+
+def pole_pair(elements: tuple[Element, ...], value: Values, eps: float) -> tuple[float, float]:
+    """Return w0 and Q of the pole pair next to w = 1."""
+    poles = with_bandwidth(elements, value, eps).poles
+    pair = min((p for p in poles if p.imag > 0), key=lambda p: abs(abs(p) - 1) + abs(p.imag - 1))
     return abs(pair), abs(pair) / (-2 * pair.real)
 
 
-@pytest.mark.parametrize("topology", DESIGNS)
-@pytest.mark.parametrize("q", [0.8, 1.5, 5.0, 20.0])
-def test_what_first_order_leaves_falls_with_the_square(topology: str, q: float) -> None:
-    formula = FORMULAS[topology]
-    terms = {"Q": q, "sqrt": sqrt, "pi": pi}
-    # The formulas are arithmetic in Q, written in the reference file of the tests themselves.
-    shift_f0 = float(eval(formula["df0"], {"__builtins__": {}}, terms))  # noqa: S307
-    shift_q = float(eval(formula["dQ"], {"__builtins__": {}}, terms))  # noqa: S307
-    left: list[tuple[float, float]] = []
-    steps = [1e-4 / q, 0.5e-4 / q]
-    for eps in steps:
-        w0, q_is = pole_pair(topology, q, eps)
-        left.append((w0 - 1 - shift_f0 * eps, q_is / q - 1 - shift_q * eps))
+def shift(formula: str, q: float, noise_gain: float = 3.0) -> float:
+    """Return a formula of the reference file: arithmetic in Q, and in N where it holds for any."""
+    scope = {"__builtins__": {}, "Q": q, "N": noise_gain}
+    return float(eval(formula, scope))  # noqa: S307  (written in the tests' own reference file)
 
+
+def check_first_order(
+    elements: tuple[Element, ...], value: Values, q: float, shift_f0: float, shift_q: float
+) -> None:
+    """Assert that what the first-order shifts leave falls with the square of eps."""
+    steps = [1e-4 / q, 0.5e-4 / q]
+    left: list[tuple[float, float]] = []
+    for eps in steps:
+        w0, q_is = pole_pair(elements, value, eps)
+        left.append((w0 - 1 - shift_f0 * eps, q_is / q - 1 - shift_q * eps))
     for before, after in zip(*left, strict=True):
         # Second order: halving eps leaves a quarter; 1e-13 is what rounding leaves.
         assert abs(after - before / 4) <= 0.02 * abs(before) + 1e-13
         assert abs(before) <= 100 * (q * steps[0]) ** 2
 
 
+@pytest.mark.parametrize("topology", DESIGNS)
+@pytest.mark.parametrize("q", [0.8, 1.5, 5.0, 20.0])
+def test_what_first_order_leaves_falls_with_the_square(topology: str, q: float) -> None:
+    elements, design = DESIGNS[topology]
+    shift_f0, shift_q = (shift(FORMULAS[topology][key], q) for key in ("df0", "dQ"))
+    check_first_order(elements, design(q), q, shift_f0, shift_q)
+
+
+@pytest.mark.parametrize("noise_gain", [2.25, 3.0, 6.0])
+@pytest.mark.parametrize("q", [0.8, 1.5, 5.0, 20.0])
+def test_the_noise_gain_of_the_summing_amplifier_sets_the_shift(
+    noise_gain: float, q: float
+) -> None:
+    # By hand, with Rhp = Rlp = 1: N = 2 + 1/Rin, and the damping N Rg/(Rg + Rbp) is 1/Q.
+    value = {"Rin": 1 / (noise_gain - 2), "Rbp": noise_gain * q - 1}
+    shift_f0, shift_q = (shift(READ["noise_gain"][key], q, noise_gain) for key in ("df0", "dQ"))
+    check_first_order(known("state-variable"), value, q, shift_f0, shift_q)
+
+
+@pytest.mark.parametrize(("topology", "slope"), READ["reciprocal"].items())
+@pytest.mark.parametrize("q", [10.0, 20.0])
+@pytest.mark.parametrize("product", [0.1, 0.3, 0.5])
+def test_q_rises_as_the_reciprocal(topology: str, slope: float, q: float, product: float) -> None:
+    elements, design = DESIGNS[topology]
+    _, raised = pole_pair(elements, design(q), product / (slope * q))
+
+    assert raised == pytest.approx(q / (1 - product), rel=0.02)
+
+
+@pytest.mark.parametrize("topology", READ["reciprocal"])
+def test_a_two_integrator_loop_of_too_slow_op_amps_oscillates(topology: str) -> None:
+    elements, design = DESIGNS[topology]
+    q, eps = READ["oscillating"]["Q"], READ["oscillating"]["eps"]
+
+    found = instability(with_bandwidth(elements, design(q), eps))
+    assert found is not None
+    assert found.certain
+    assert instability(with_bandwidth(elements, design(q), eps / 10)) is None
+
+
 def test_at_eps_0_the_designs_are_what_they_claim() -> None:
     for topology in DESIGNS:
-        w0, q = pole_pair(topology, 5.0, 1e-12)
+        elements, design = DESIGNS[topology]
+        w0, q = pole_pair(elements, design(5.0), 1e-12)
         assert w0 == pytest.approx(1, rel=1e-10)
         assert q == pytest.approx(5, rel=1e-9)
 

@@ -76,6 +76,58 @@ BROKEN: list[tuple[str, tuple[Element, ...], str, str]] = [
         "the loop of U1 has no solution",
     ),
     (
+        "two nodes between capacitors",
+        (
+            *DIVIDER,
+            *(Capacitor("C1", "o", "x"), Capacitor("C2", "x", "ground")),
+            *(Capacitor("C3", "o", "y"), Capacitor("C4", "y", "ground")),
+        ),
+        "C1",
+        "node 'x' floats: no path for direct current leads to it",
+    ),
+    (
+        "three capacitors in a row",
+        (*DIVIDER, Capacitor("C1", "o", "x"), Capacitor("C2", "x", "y"), Capacitor("C3", "y", "o")),
+        "C1",
+        "node 'x' floats: no path for direct current leads to it",
+    ),
+    (
+        "an input behind a capacitor alone",
+        (Capacitor("C1", "in", "p"), ideal("U1", "p", "o", "o")),
+        "C1",
+        "node 'p' floats: no path for direct current leads to it",
+    ),
+    (
+        "two islands",
+        (
+            *DIVIDER,
+            *(Resistor("R3", "x", "y"), Resistor("R4", "x", "y")),
+            *(Resistor("R5", "v", "w"), Resistor("R6", "v", "w")),
+        ),
+        "R3",
+        "node 'x' floats: no path for direct current leads to it",
+    ),
+    (
+        "an island and no feedback",
+        (
+            *DIVIDER,
+            *(ideal("U1", "o", "ground", "x"), Resistor("R3", "x", "ground")),
+            *(Resistor("R5", "v", "w"), Resistor("R6", "v", "w")),
+        ),
+        "R5",
+        "node 'v' floats: no path for direct current leads to it",
+    ),
+    (
+        "no feedback twice",
+        (
+            *DIVIDER,
+            *(ideal("U1", "o", "ground", "x"), Resistor("R3", "x", "ground")),
+            *(ideal("U2", "o", "ground", "y"), Resistor("R4", "y", "ground")),
+        ),
+        "U2",
+        "the loop of U2 has no solution",
+    ),
+    (
         "both inputs at one node",
         (*DIVIDER, ideal("U1", "o", "o", "x"), Resistor("R3", "x", "o")),
         "U1",

@@ -37,7 +37,7 @@ TYPICAL = {
 
 def random_network(rng: random.Random) -> Network:
     """Return a connected network: a chain from the source, then parts anywhere, op-amps as
-    followers or inverters at some of the nodes."""
+    followers or inverters at some of the nodes; up to fifteen parts."""
     count = rng.randint(2, 5)
     nodes = [f"n{i}" for i in range(count)]
     passive = (Resistor, Resistor, Capacitor, Inductor)
@@ -48,9 +48,15 @@ def random_network(rng: random.Random) -> Network:
         a, b = rng.sample([*nodes, INPUT, GROUND], 2)
         elements.append(rng.choice(passive)(f"P{i}", a, b))
     for i in range(rng.randint(0, 2)):
-        out, plus = f"o{i}", rng.choice(nodes)
-        elements.append(Amplifier(f"U{i}", plus, out, out))
-        elements.append(Resistor(f"F{i}", out, rng.choice(nodes)))
+        out, node = f"o{i}", rng.choice(nodes)
+        finite = {"finite_gain": rng.random() < 0.7, "finite_bandwidth": rng.random() < 0.7}
+        if rng.random() < 0.5:
+            elements.append(Amplifier(f"U{i}", node, out, out, **finite))
+            elements.append(Resistor(f"F{i}", out, rng.choice(nodes)))
+        else:
+            elements.append(Resistor(f"I{i}", node, f"m{i}"))
+            elements.append(rng.choice((Resistor, Capacitor))(f"F{i}", f"m{i}", out))
+            elements.append(Amplifier(f"U{i}", GROUND, f"m{i}", out, **finite))
     return Network(tuple(elements))
 
 
@@ -70,7 +76,8 @@ def nodal(network: Network, values: dict[Symbol, float], freq_hz: float) -> dict
     for e in network.elements:
         given = {symbol.kind: values[symbol] for symbol in symbols(e)}
         if isinstance(e, Amplifier):
-            add(e.out, e.out, given["inverse gain"] + s * given["inverse bandwidth"])
+            inverse_gain, tau = given.get("inverse gain", 0.0), given.get("inverse bandwidth", 0.0)
+            add(e.out, e.out, inverse_gain + s * tau)
             add(e.out, e.plus, -1)
             add(e.out, e.minus, 1)
             continue

@@ -6,6 +6,7 @@ Sources and status of each value are in `tests/reference/worked_examples.yaml`.
 from __future__ import annotations
 
 from collections.abc import Callable
+from dataclasses import replace
 from math import inf, pi
 from pathlib import Path
 from typing import Any
@@ -14,6 +15,7 @@ import numpy as np
 import pytest
 import yaml
 
+from filtercheck.circuits import CIRCUITS
 from filtercheck.network.curve import Curve
 from filtercheck.network.elements import (
     GROUND,
@@ -26,7 +28,7 @@ from filtercheck.network.elements import (
 )
 from filtercheck.network.expansion import network_functions
 from filtercheck.network.ratio import ratio
-from filtercheck.network.response import Response
+from filtercheck.network.response import Response, product
 
 REFERENCE = Path(__file__).parent.parent / "reference" / "worked_examples.yaml"
 EXAMPLES: list[dict[str, Any]] = yaml.safe_load(REFERENCE.read_text("utf-8"))["examples"]
@@ -49,12 +51,19 @@ def element(row: list[Any]) -> Element:
     return PASSIVE[kind](name, a, b)
 
 
+def stated(example: dict[str, Any]) -> dict[str, float]:
+    return {row[1]: float(row[-1]) for row in example["netlist"] if row[0] != "OA"}
+
+
 def response(example: dict[str, Any], node: str) -> Response:
-    rows = example["netlist"]
-    functions = network_functions(Network(tuple(element(row) for row in rows)))
-    stated = {row[1]: float(row[-1]) for row in rows if row[0] != "OA"}
+    network = Network(tuple(element(row) for row in example["netlist"]))
+    return valued(network, node, stated(example))
+
+
+def valued(network: Network, node: str, value: dict[str, float]) -> Response:
+    functions = network_functions(network)
     values = {
-        s: 1 / stated[s.element] if s.kind == "conductance" else stated[s.element]
+        s: 1 / value[s.element] if s.kind == "conductance" else value[s.element]
         for s in functions.denominator.symbols
     }
     return Response((ratio(functions.numerators[node], functions.denominator, values),))
@@ -154,3 +163,43 @@ def test_claim(example: dict[str, Any], claim: dict[str, Any]) -> None:
 def test_all_twenty_examples_are_here() -> None:
     assert len(EXAMPLES) == 20
     assert len({example["id"] for example in EXAMPLES}) == 20
+
+
+# The examples whose circuit has a module: its sections in a row, and for each role the part.
+BANDPASS = "multiple-feedback-bandpass"
+KNOWN: dict[str, list[tuple[str, str]]] = {
+    "SK04": [("sallen-key-lowpass", "R1=R1 R2=R2 C1=C2 C2=C1")],
+    "MF01": [(BANDPASS, "Rin=R1A Rg=R1B C1=C1 C2=C2 R2=R2")],
+    "MF02": [("multiple-feedback-lowpass", "Rin=R1 Rf=R3 R2=R2 C1=C1 C2=C2")],
+    "CA05": [
+        ("sallen-key-highpass", "C1=C11 C2=C21 R1=Ro1 R2=Rg1"),
+        ("one-pole-highpass-inverting", "C=C12 Rin=R12 Rf=Rf"),
+    ],
+    "CA06": [(BANDPASS, f"Rin=R1A{k} Rg=R1B{k} C1=C1{k} C2=C2{k} R2=R2{k}") for k in (1, 2, 3)],
+    "OP01": [("passive-lowpass", "R=R C=C"), ("noninverting-gain", "Rf=Rf Rg=R1")],
+    "OP02": [("one-pole-lowpass", "R=R1 C=C1")],
+    "MF05": [("multiple-feedback-highpass", "Cin=C1 Cf=C2 C2=C3 R1=R2 R2=R1")],
+    "PL01": [("passive-lowpass", "R=R C=C")],
+}
+
+
+@pytest.mark.parametrize("name", KNOWN)
+def test_the_circuit_of_an_example_responds_as_its_netlist(name: str) -> None:
+    (example,) = (e for e in EXAMPLES if e["id"] == name)
+    sections = []
+    for circuit, text in KNOWN[name]:
+        known = CIRCUITS[circuit]
+        part = dict(pair.split("=") for pair in text.split())
+        elements = tuple(
+            replace(e, finite_gain=False, finite_bandwidth=False) if isinstance(e, Amplifier) else e
+            for e in known.fitted(part)
+        )
+        (node,) = known.outputs.values()
+        value = {role: stated(example)[own] for role, own in part.items()}
+        sections.append(valued(Network(elements), node, value))
+    built, drawn = product(sections), response(example, example["output"])
+
+    freq_hz = np.array([0.0, *np.geomspace(1.0, 1e6, 61)])
+    np.testing.assert_allclose(built.gain_db(freq_hz), drawn.gain_db(freq_hz), rtol=0, atol=1e-9)
+    turn = np.radians(built.phase_deg(freq_hz) - drawn.phase_deg(freq_hz))
+    np.testing.assert_allclose(np.exp(1j * turn), 1.0, atol=1e-9)
