@@ -16,6 +16,7 @@ from pathlib import Path
 
 from filtercheck import __version__, pipeline
 from filtercheck.errors import FiltercheckError, QuantityError, UsageError
+from filtercheck.model.reach import WORDS, within_reach
 from filtercheck.model.verdict import Outcome, Run
 from filtercheck.quantities import parse
 
@@ -152,8 +153,8 @@ def _frequency(text: str, option: str) -> float:
         value = parse(text.strip(), "frequency")
     except QuantityError as error:
         raise UsageError(f"{option} {text}: {error.problem}; {error.fix}") from error
-    if value < 0.0:
-        raise UsageError(f"{option} {text}: a frequency is not negative")
+    if value < 0.0 or not within_reach(value):
+        raise UsageError(f"{option} {text}: a frequency is not negative; {WORDS}")
     return value
 
 

@@ -120,3 +120,6 @@ def bounded(errors: Iterable[InputError]) -> list[InputError]:
 
 class UsageError(FiltercheckError):
     """The command's arguments ask for something that cannot be done."""
+
+    def __str__(self) -> str:
+        return visible(super().__str__())

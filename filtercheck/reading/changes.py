@@ -7,6 +7,7 @@ from dataclasses import dataclass, replace
 
 from filtercheck.errors import QuantityError, UsageError
 from filtercheck.model.part import Figure, OpAmp, Part, Passive
+from filtercheck.model.reach import within_reach
 from filtercheck.model.subject import Subject
 from filtercheck.quantities import parse
 from filtercheck.wording import listed, suggestion
@@ -78,7 +79,7 @@ def _not_one(one: Change, fitting: Sequence[Subject], subjects: Sequence[Subject
 
 def _set(part: Part, one: Change) -> Part:
     if isinstance(part, Passive):
-        if one.figure:
+        if one.figure is not None:
             raise UsageError(f"--set {one.given}: {one.designator} has one value and no figures")
         value = _positive(one, part.quantity)
         return replace(part, value=value, ideal=None, series=None, changed=True)
@@ -106,6 +107,6 @@ def _positive(one: Change, quantity: str) -> float:
         value = parse(one.text.strip(), quantity)
     except QuantityError as error:
         raise UsageError(f"--set {one.given}: {error.problem}; {error.fix}") from error
-    if value <= 0.0:
-        raise UsageError(f"--set {one.given}: the value is not positive")
+    if value <= 0.0 or not within_reach(value):
+        raise UsageError(f"--set {one.given}: the value is not positive, or out of all range")
     return value

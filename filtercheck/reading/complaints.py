@@ -70,7 +70,7 @@ def _unknown_keys(
             meant = suggestion(key, [k for k in known if k not in instance] or known)
             fix = f"write {meant}" if meant else "delete it, or write one of the keys above"
             at = source.keys[(*path, key)]
-            yield _error(f"unknown key {key!r}", at, key, listed(known), fix)
+            yield _error(f"unknown key {key!r}", at, key or "nothing", listed(known), fix)
 
 
 def _missing_keys(

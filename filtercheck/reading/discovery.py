@@ -39,7 +39,7 @@ def find(paths: Sequence[str]) -> Found:
     places = [Path(path) for path in paths] or [_around(Path())]
     boards: list[str] = []
     hashes: dict[str, str] = {}
-    files: dict[Path, File] = {}
+    files: dict[str, File] = {}
     for place in places:
         if place.is_dir():
             inside = _folder(place, boards, hashes)
@@ -49,7 +49,7 @@ def find(paths: Sequence[str]) -> Found:
             inside = [File(place, _named(place), _root(place))]
         else:
             raise UsageError(f"{_named(place)} does not exist")
-        files |= {file.path.absolute(): file for file in inside}
+        files |= {os.path.abspath(file.path): file for file in inside}  # noqa: PTH100  (of a/..)
     return Found(
         ", ".join(boards), tuple(sorted(files.values(), key=lambda file: file.name)), hashes
     )
@@ -86,9 +86,14 @@ def _folder(folder: Path, boards: list[str], hashes: dict[str, str]) -> list[Fil
 
 def _below(folder: Path) -> Iterator[Path]:
     """Yield the filter files below a folder; hidden folders and links are not entered."""
-    for here, folders, files in os.walk(folder):
+    for here, folders, files in os.walk(folder, onerror=_unlisted):
         folders[:] = [name for name in folders if not name.startswith(".")]
         yield from (Path(here, name) for name in files if name.endswith(SUFFIX))
+
+
+def _unlisted(error: OSError) -> None:
+    """Refuse to pass over a folder: a filter in it would go unjudged."""
+    raise UsageError(f"{error.filename}: the folder cannot be listed, {error.strerror}")
 
 
 def _matching(folder: Path, pattern: str, at: Position) -> list[Path]:
@@ -97,7 +102,9 @@ def _matching(folder: Path, pattern: str, at: Position) -> list[Path]:
     problem = "matches no file"
     if Path(pattern).is_absolute() or ".." in parts:
         problem = "leads outside the board's folder"
-    elif found := [path for path in folder.glob(pattern) if not path.is_dir()]:
+    elif pattern.count("**") > 1:
+        problem = "has more than one `**`"  # the search would take time without bound
+    elif found := _globbed(folder, pattern):
         return found
     raise InputErrors(
         [
@@ -110,6 +117,18 @@ def _matching(folder: Path, pattern: str, at: Position) -> list[Path]:
             )
         ]
     )
+
+
+def _globbed(folder: Path, pattern: str) -> list[Path]:
+    try:
+        return [path for path in folder.glob(pattern) if not path.is_dir()]
+    except (
+        ValueError,
+        IndexError,
+        AttributeError,
+        NotImplementedError,
+    ):  # no pattern that can be searched
+        return []
 
 
 def _root(place: Path) -> Path:

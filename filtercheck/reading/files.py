@@ -14,7 +14,7 @@ from stat import S_ISREG
 
 from filtercheck.errors import InputError, InputErrors
 from filtercheck.position import Position
-from filtercheck.reading.source import LARGEST
+from filtercheck.reading.source import LARGEST, LINE_END
 
 
 @dataclass(frozen=True)
@@ -49,7 +49,7 @@ def content(file: File) -> tuple[str, str]:
     try:
         return data.decode("utf-8-sig"), sha256(data).hexdigest()
     except UnicodeDecodeError as error:
-        raise _not_utf8(file, data, error) from error
+        raise _not_utf8(file, error) from error
 
 
 def _opened(path: str, flags: int) -> int:
@@ -66,15 +66,15 @@ def _refused(file: File, problem: str, found: str) -> InputErrors:
     )
 
 
-def _not_utf8(file: File, data: bytes, error: UnicodeDecodeError) -> InputErrors:
-    before = data[: error.start].decode("utf-8", "replace")
-    line = data.splitlines()[before.count("\n")].decode("utf-8", "replace")
-    at = Position(file.name, before.count("\n") + 1, len(before) - before.rfind("\n"), 1, line)
+def _not_utf8(file: File, error: UnicodeDecodeError) -> InputErrors:
+    data = error.object  # without a byte order mark, unlike what was read
+    before = LINE_END.split(data[: error.start].decode("utf-8", "replace"))
+    line = LINE_END.split(data.decode("utf-8", "replace"))[len(before) - 1]
     return InputErrors(
         [
             InputError(
                 "the file is not UTF-8",
-                at,
+                Position(file.name, len(before), len(before[-1]) + 1, 1, line),
                 found=f"byte 0x{data[error.start]:02x}",
                 allowed="text in UTF-8",
                 fix="save the file as UTF-8",

@@ -8,6 +8,7 @@ from typing import cast
 
 from filtercheck.errors import InputError, QuantityError
 from filtercheck.model.part import Figure, OpAmp, Part, Passive, Spread
+from filtercheck.model.reach import WORDS, within_reach
 from filtercheck.position import Position
 from filtercheck.preferred import is_member, nearest, neighbours
 from filtercheck.quantities import parse, rounded
@@ -96,12 +97,12 @@ def _preferred(designator: str, data: Keys, source: Source) -> Passive:
         raise InputError(
             error.problem, at, found=error.found, allowed=error.allowed, fix=error.fix
         ) from error
-    if not ideal > 0.0:
+    if not ideal > 0.0 or not within_reach(ideal):
         raise InputError(
-            f"the ideal value of {designator} is not positive",
+            f"the ideal value of {designator} is not positive, or out of all range",
             at,
             found=str(data["ideal"]),
-            allowed="a value above 0",
+            allowed=f"a value above 0; {WORDS}",
             fix="mend the value",
         )
     series = str(data["series"])
@@ -138,6 +139,15 @@ def _tolerance(designator: str, data: Keys, source: Source) -> Spread | None:
 
 
 def _op_amp(designator: str, data: Keys, source: Source) -> OpAmp:
+    for key in ("series", "tolerance"):
+        if key in data:
+            raise InputError(
+                f"an amplifier has no {key}",
+                source.at("parts", designator, key),
+                found=f"{key} of {designator}",
+                allowed="gain_bandwidth and open_loop_gain, each with min, typical and max",
+                fix=f"delete `{key}`",
+            )
     stated = data["amplifier"]
     place = source.at("parts", designator)
     if isinstance(stated, str):  # the word `ideal`

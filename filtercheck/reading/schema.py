@@ -17,6 +17,7 @@ from jsonschema import Draft7Validator, ValidationError
 from jsonschema.validators import extend
 
 from filtercheck.errors import InputErrors, QuantityError, bounded
+from filtercheck.model.reach import WORDS, within_reach
 from filtercheck.model.requirement import Setting
 from filtercheck.quantities import parse, rounded
 from filtercheck.reading.complaints import complaints
@@ -78,6 +79,10 @@ def _quantity(_: object, quantity: str, text: object, rule: Schema) -> Iterator[
         value = parse(text, quantity)
     except QuantityError as error:
         yield _said(error.problem, error.found, error.allowed + also, error.fix)
+        return
+    if not within_reach(value):
+        fix = "write a value that a part or a filter can have"
+        yield _said("the value is out of all range", text, WORDS + also, fix)
         return
     above, least = rule.get("above"), rule.get("from")
     if above is not None and not value > above:

@@ -28,7 +28,7 @@ _LOADER = getattr(yaml, "CSafeLoader", yaml.SafeLoader)
 
 
 # What YAML 1.1 takes for the end of a line, and the characters that it forbids.
-_LINE_END = re.compile("\r\n|[\n\r\x85\u2028\u2029]")
+LINE_END = re.compile("\r\n|[\n\r\x85\u2028\u2029]")
 _FORBIDDEN = re.compile(
     "[^\t\n\r\x20-\x7e\x85\xa0-\ud7ff\ue000-\ufefe\uff00-\ufffd\U00010000-\U0010ffff]"
 )
@@ -69,8 +69,8 @@ def read(text: str, file: str) -> Source:
 
 
 def _unreadable(text: str, file: str, at: int) -> InputError:
-    before = _LINE_END.split(text[:at])
-    line = _LINE_END.split(text)[len(before) - 1]
+    before = LINE_END.split(text[:at])
+    line = LINE_END.split(text)[len(before) - 1]
     return InputError(
         "a character is not allowed in YAML",
         Position(file, len(before), len(before[-1]) + 1, 1, line),
@@ -86,7 +86,7 @@ class _Reader:
 
     def __init__(self, text: str, file: str) -> None:
         self.file = file
-        self.lines = _LINE_END.split(text)
+        self.lines = LINE_END.split(text)
         self.events: Iterator[yaml.Event] = yaml.parse(text, Loader=_LOADER)
         self.values: dict[Path, Position] = {}
         self.keys: dict[Path, Position] = {}

@@ -72,7 +72,7 @@ def summary(verdict: Verdict) -> str:
 def said(finding: Finding) -> str:
     """Return a finding in one line."""
     if isnan(finding.value):
-        return f"no {finding.subject}, {visible(finding.note)}"
+        return f"no {finding.subject}, {visible(finding.note) or 'for no reason that is known'}"
     where = "" if finding.quantity == "frequency" else f" at {place(finding)}"
     text = f"{finding.subject} {value(finding)}{where}, {finding.sense} "
     text += f"{rounded(finding.limit, finding.quantity)}: margin {margin(finding)}"

@@ -67,11 +67,13 @@ def read(requirement: Requirement) -> Attenuation:
     Raises
     ------
     InputError
-        If the limit does not span the band, or there is not just one reference.
+        If the limit is negative or does not span the band, or there is not just one reference.
     """
     band_hz = levels.band(requirement)
-    limit = levels.mask(requirement, "min", band_hz)
-    return Attenuation(band_hz, limit or (), levels.reference(requirement))
+    limit = levels.mask(requirement, "min", band_hz) or ()
+    if any(level_db < 0.0 for _, level_db in limit):
+        raise requirement.error("min", "an attenuation cannot be negative", "0 dB or more")
+    return Attenuation(band_hz, limit, levels.reference(requirement))
 
 
 KIND = Kind("attenuation", __doc__, read)
