@@ -305,8 +305,8 @@ def test_the_gain_of_a_product_is_right_over_any_span(seed: int) -> None:
         total = mpmath.mpf(0)
         for one in factors:
             x = 2j * mpmath.pi * mpmath.mpf(f) / mpmath.mpf(one.omega0)
-            top = mpmath.polyval([mpmath.mpf(c) for c in one.numerator[::-1]], x)
-            bottom = mpmath.polyval([mpmath.mpf(c) for c in one.denominator[::-1]], x)
+            top = sum(mpmath.mpf(c) * x**k for k, c in enumerate(one.numerator))
+            bottom = sum(mpmath.mpf(c) * x**k for k, c in enumerate(one.denominator))
             total += 20 * mpmath.log10(abs(x**one.order * top / bottom))
         return float(total)
 
