@@ -148,6 +148,24 @@ def test_the_culprit_is_named(elements: tuple[Element, ...], culprit: str, probl
     assert raised.value.fix
 
 
+def test_a_floating_node_is_reported_with_all_that_reach_it() -> None:
+    capacitors = (Capacitor("C1", "o", "x"), Capacitor("C2", "x", "ground"))
+    with pytest.raises(NetworkError) as raised:
+        check(Network((*DIVIDER, *capacitors, ideal("U1", "x", "u", "u"))), frozenset({"o", "u"}))
+
+    assert raised.value.found == "node 'x' is reached through C1, C2, U1 only"
+
+
+@pytest.mark.parametrize("sound_first", [True, False])
+def test_a_sound_amplifier_is_not_blamed_for_another(sound_first: bool) -> None:
+    sound, bad = ideal("U1", "o", "b", "b"), ideal("U2", "b", "ground", "x")
+    both = (sound, bad) if sound_first else (bad, sound)
+    with pytest.raises(NetworkError) as raised:
+        check(Network((*DIVIDER, *both, Resistor("R3", "x", "b"))), frozenset({"o"}))
+
+    assert raised.value.culprit == "U2"
+
+
 @pytest.mark.parametrize(
     "elements",
     [

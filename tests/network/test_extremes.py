@@ -409,6 +409,24 @@ def test_phase_is_the_sum_of_what_the_roots_turn(
     np.testing.assert_allclose(response.phase_deg(freq_hz), want, rtol=0, atol=1e-7)
 
 
+@pytest.mark.parametrize("count", [3, 6, 10])
+def test_phase_of_one_ratio_goes_round_more_than_once(count: int) -> None:
+    # By hand: prod (1 - s/w_k)/(1 + s/w_k) turns by -2 atan(w/w_k) for each k, 1800 degrees in
+    # all with ten of them.
+    corners = 2.0 ** np.arange(count)
+    numerator, denominator = np.ones(1), np.ones(1)
+    for corner in corners:
+        numerator = np.convolve(numerator, [1, -1 / corner])
+        denominator = np.convolve(denominator, [1, 1 / corner])
+    all_pass = Response((Ratio(numerator, denominator, 0, 0, 1.0),))
+    omega = np.geomspace(1e-3, 1e6, 181)
+
+    want = -2 * np.degrees(np.arctan(omega[:, None] / corners)).sum(axis=1)
+    got = all_pass.phase_deg(omega / (2 * pi))
+    np.testing.assert_allclose(got, want, rtol=0, atol=1e-7)
+    assert want[-1] < -180 * count + 1
+
+
 def test_group_delay_is_minus_the_derivative_of_the_phase() -> None:
     response = product([second_order(1e3, 8.0), one_pole(500.0, high=True)])
 
