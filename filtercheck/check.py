@@ -2,27 +2,28 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
-from dataclasses import replace
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+from functools import cached_property
 
 from filtercheck.errors import InputError, InputErrors
-from filtercheck.model.part import Figure, OpAmp
 from filtercheck.model.requirement import Requirement
 from filtercheck.model.subject import Subject
-from filtercheck.model.verdict import Judged, Outcome, Verdict, decide
+from filtercheck.model.verdict import Finding, Judged, Verdict, decide
 from filtercheck.network.curve import Curve
 from filtercheck.network.response import Response
-from filtercheck.network.stability import instability
-from filtercheck.quantities import rounded
 from filtercheck.requirements import KINDS
 from filtercheck.requirements.kind import Wanted
+from filtercheck.verification import standing, worst_case
+from filtercheck.verification.sampled import Sampled
+from filtercheck.verification.standing import Standing
+from filtercheck.wiring.groups import Wiring
+from filtercheck.wiring.variation import Variation
 from filtercheck.wiring.wired import responses, wired
-
-FAST = Figure(1e12, 1e12, 1e12)  # a gain-bandwidth far above that of any part [Hz]
 
 
 def judge(subject: Subject) -> Judged:
-    """Judge every requirement of one filter with the parts as fitted.
+    """Judge every requirement of one filter.
 
     Raises
     ------
@@ -37,12 +38,8 @@ def judge(subject: Subject) -> Judged:
     if faults:
         raise InputErrors(faults)
     reached, whole = responses(subject, wiring)
-    standing = _standing(whole) or _standing(_whole_with_real(subject))
-    curves = {output: Curve(response) for output, response in reached.items()}
-    verdicts = (
-        _verdict(subject, requirement, wanted[requirement.name], curves, standing)
-        for requirement in subject.requirements
-    )
+    bench = _Bench(subject, wiring, reached, whole)
+    verdicts = (bench.verdict(one, wanted[one.name]) for one in subject.requirements)
     return Judged(
         subject.name,
         subject.title,
@@ -50,22 +47,6 @@ def judge(subject: Subject) -> Judged:
         tuple(subject.parts.values()),
         tuple(verdicts),
     )
-
-
-def _whole_with_real(subject: Subject) -> Response:
-    """Return the response through the whole with op-amps that are fast, but not infinitely so.
-
-    The equations of an ideal op-amp cannot tell its inputs apart: exchanged by mistake, they
-    give the same response, and only a finite bandwidth shows that the loop runs away.
-    """
-    real = {
-        name: replace(part, gain_bandwidth=FAST)
-        if isinstance(part, OpAmp) and part.gain_bandwidth is None
-        else part
-        for name, part in subject.parts.items()
-    }
-    fast = replace(subject, parts=real)
-    return responses(fast, wired(fast))[1]
 
 
 def _wanted(subject: Subject) -> tuple[dict[str, Wanted], list[InputError]]:
@@ -78,38 +59,67 @@ def _wanted(subject: Subject) -> tuple[dict[str, Wanted], list[InputError]]:
     return wanted, faults
 
 
-def _verdict(
-    subject: Subject,
-    requirement: Requirement,
-    wanted: Wanted,
-    curves: Mapping[str, Curve],
-    standing: tuple[Outcome, str] | None,
-) -> Verdict:
-    """Judge one requirement. A response means nothing for a circuit that oscillates."""
-    findings = () if standing else tuple(wanted.findings(curves[requirement.output]))
-    outcome, reason = standing or (decide(findings), "")
-    return Verdict(
-        subject.name,
-        requirement.name,
-        requirement.kind,
-        requirement.output,
-        requirement.verify,
-        outcome,
-        tuple(sorted(findings, key=lambda finding: finding.tightness_db)),
-        reason,
-        requirement.at,
-    )
+@dataclass(frozen=True, eq=False)
+class _Bench:
+    """What the requirements of one filter share, worked out when the first one needs it."""
 
+    subject: Subject
+    wiring: Wiring
+    reached: Mapping[str, Response]
+    whole: Response
 
-def _standing(whole: Response) -> tuple[Outcome, str] | None:
-    """Return the outcome and the reason when the circuit is not shown stable, else None."""
-    found = instability(whole)
-    if found is None:
-        return None
-    pole = f"a pole at {rounded(found.freq_hz, 'frequency')}"
-    if found.certain:
-        return Outcome.FAIL, f"unstable: {pole} lies in the right half-plane"
-    return (
-        Outcome.UNDECIDED,
-        f"not shown stable: {pole} lies on the imaginary axis, or too near",
-    )
+    def verdict(self, requirement: Requirement, wanted: Wanted) -> Verdict:
+        """Judge one requirement. A response means nothing for a circuit that oscillates."""
+        stands = self.nominal_standing
+        if stands is None and requirement.verify == "worst-case":
+            stands = self.box_standing
+        findings = () if stands else self._findings(requirement, wanted)
+        return Verdict(
+            filter=self.subject.name,
+            requirement=requirement.name,
+            kind=requirement.kind,
+            output=requirement.output,
+            verify=requirement.verify,
+            outcome=stands.outcome if stands else decide(findings),
+            findings=tuple(sorted(findings, key=lambda finding: finding.tightness_db)),
+            reason=stands.reason if stands else "",
+            unstable=stands.board if stands else (),
+            at=requirement.at,
+        )
+
+    def _findings(self, requirement: Requirement, wanted: Wanted) -> Sequence[Finding]:
+        curve = self.curves[requirement.output]
+        identity = f"{self.subject.name} {requirement.name}"
+        if requirement.verify == "nominal":
+            return tuple(wanted.findings(curve))
+        if requirement.sampling is not None:
+            stable = self.box_standing is None
+            return (
+                Sampled(
+                    wanted,
+                    self.variation,
+                    requirement.output,
+                    requirement.sampling,
+                    identity,
+                    stable,
+                ).finding(),
+            )
+        return tuple(
+            worst_case.findings(wanted, self.variation, requirement.output, curve, identity)
+        )
+
+    @cached_property
+    def curves(self) -> dict[str, Curve]:
+        return {output: Curve(response) for output, response in self.reached.items()}
+
+    @cached_property
+    def variation(self) -> Variation:
+        return Variation(self.wiring, self.subject.parts)
+
+    @cached_property
+    def nominal_standing(self) -> Standing | None:
+        return standing.nominal(self.subject, self.whole)
+
+    @cached_property
+    def box_standing(self) -> Standing | None:
+        return standing.every_board(self.subject)

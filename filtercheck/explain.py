@@ -6,7 +6,7 @@ from collections.abc import Iterable, Iterator, Mapping
 from inspect import cleandoc
 from typing import Any
 
-from filtercheck import quantities
+from filtercheck import quantities, verification
 from filtercheck.circuits import CIRCUITS
 from filtercheck.errors import UsageError
 from filtercheck.model import verdict
@@ -15,7 +15,11 @@ from filtercheck.requirements import KINDS
 from filtercheck.wording import listed, suggestion, wrapped
 
 FORMATS = ("filter", "board", "evidence")
-NOTATIONS = {"quantities": quantities.__doc__, "verdicts": verdict.__doc__}
+NOTATIONS = {
+    "quantities": quantities.__doc__,
+    "verify": verification.__doc__,
+    "verdicts": verdict.__doc__,
+}
 
 
 def topics() -> str:

@@ -26,6 +26,9 @@ class Passive:
     ideal: float | None  # the value that was wanted, where a preferred one is fitted for it
     series: str | None  # the series it was checked against
     tolerance: Spread | None
+    network: str | None  # the matched network it is a member of
+    track: float | None  # how far it may lie from what the network has in common, as a fraction
+    distribution: str  # "uniform", "normal" or "two-sided", for a yield
     changed: bool  # set on the command line, not what the file says
     at: Position
 
@@ -46,6 +49,7 @@ class OpAmp:
     designator: str
     gain_bandwidth: Figure | None  # [Hz]
     open_loop_gain: Figure | None  # [V/V]
+    distribution: str
     changed: bool
     at: Position
 

@@ -19,13 +19,23 @@ Mask = tuple[tuple[float, float], ...]  # (frequency [Hz], level [dB]), rising i
 
 
 @dataclass(frozen=True)
+class Sampling:
+    """What a yield must be, and how sure that must be."""
+
+    share: float  # of the boards
+    confidence: float
+    boards: int
+
+
+@dataclass(frozen=True)
 class Requirement:
     """One requirement; `settings` holds the keys that belong to its kind."""
 
     name: str
     kind: str
     output: str
-    verify: str
+    verify: str  # "worst-case", "nominal" or "yield"
+    sampling: Sampling | None  # for "yield"
     settings: Mapping[str, Setting]
     places: Mapping[str, Position]  # of each key's value
     at: Position

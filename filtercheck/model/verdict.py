@@ -6,6 +6,12 @@ Every requirement gets one of three verdicts:
     fail        it does not; the report names frequency, value, limit, margin
     undecided   neither could be shown; this fails the build just as a fail does
 
+A requirement that is verified for the worst case passes only when it is proved
+for every combination of part values within tolerance and every frequency of
+its band; it fails only with a board that breaks it, which the report names. A
+yield passes when the lower end of the interval of the share of good boards
+reaches the share required, and fails when the upper end misses it.
+
 A margin is the distance of the closest approach to a limit, negative beyond
 it: in dB for a level, in per cent of the limit for a frequency or a Q. Exactly
 on the limit is inside it. A circuit with a pole in the right half-plane
@@ -45,8 +51,12 @@ class Finding:
     certain: float  # margin that every combination keeps
     reached: float  # margin of the worst combination found
     margin_quantity: str  # "level" [dB] or "percentage" (of the limit)
-    freq_hz: float | None  # where; None where the value is a frequency itself, or has none
+    freq_hz: float | None  # where; None where there is no such place
+    reference_hz: float | None = None  # where the gain is that the value is measured from
     note: str = ""  # what the value is measured from, or why there is none
+    interval: tuple[float, float] | None = None  # of a share, with the confidence asked for
+    worst: tuple[Part, ...] = ()  # the parts of the worst combination; none for `nominal`
+    sensitivities: tuple[tuple[str, float], ...] = ()  # part, change of the margin per 1 %
 
     @property
     def tightness_db(self) -> float:
@@ -68,6 +78,7 @@ class Verdict:
     outcome: Outcome
     findings: tuple[Finding, ...]  # the tightest first
     reason: str  # why it fails or is undecided whatever the findings; else empty
+    unstable: tuple[Part, ...]  # the parts of a board that oscillates, if that is the reason
     at: Position
 
 

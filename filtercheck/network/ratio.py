@@ -36,6 +36,19 @@ class Ratio:
     integrations: int  # poles at 0, whether or not zeros of this numerator hide them
     omega0: float  # [rad/s]
 
+    @staticmethod
+    def of(numerator: Real, denominator: Real, omega0: float) -> Ratio:
+        """Return the ratio of two polynomials in s/omega0, ascending; the denominator is not 0."""
+        lowest = int(np.flatnonzero(numerator)[0]) if numerator.any() else 0
+        below = int(np.flatnonzero(denominator)[0])
+        return Ratio(
+            np.trim_zeros(numerator[lowest:], "b") if numerator.any() else np.zeros(1),
+            np.trim_zeros(denominator[below:], "b"),
+            lowest - below,
+            below,
+            omega0,
+        )
+
     @cached_property
     def zeros(self) -> Complex:
         """Zeros other than those at 0. [rad/s]"""
@@ -62,7 +75,7 @@ def ratio(numerator: Polynomial, denominator: Polynomial, values: Mapping[Symbol
         If the equations are singular at these values, for example when positive and
         negative feedback of an ideal amplifier cancel.
     """
-    unit = _units(values)
+    unit = units(values)
     scaled = np.array([values[symbol] / unit[symbol.kind] for symbol in denominator.symbols])
     top = numerator.coefficients(scaled)
     bottom = denominator.coefficients(scaled)
@@ -74,19 +87,12 @@ def ratio(numerator: Polynomial, denominator: Polynomial, values: Mapping[Symbol
             allowed="part values at which every voltage is determined",
             fix="check the parts that feed the outputs of the amplifiers back",
         )
-    lowest = int(np.flatnonzero(top)[0]) if top.any() else 0
-    below = int(np.flatnonzero(bottom)[0])
-    return Ratio(
-        np.trim_zeros(top[lowest:], "b") if top.any() else np.zeros(1),
-        np.trim_zeros(bottom[below:], "b"),
-        lowest - below,
-        below,
-        unit["angular frequency"],
-    )
+    return Ratio.of(top, bottom, unit["angular frequency"])
 
 
-def _units(values: Mapping[Symbol, float]) -> dict[str, float]:
-    """Return units in which the values of this network are near 1."""
+def units(values: Mapping[Symbol, float], omega0: float | None = None) -> dict[str, float]:
+    """Return units in which the values of this network are near 1, that of angular frequency
+    [rad/s] being `omega0` where it is given."""
 
     def typical(kind: str) -> float | None:
         logs = [np.log(value) for symbol, value in values.items() if symbol.kind == kind]
@@ -97,12 +103,13 @@ def _units(values: Mapping[Symbol, float]) -> dict[str, float]:
     )
     if siemens is None:
         siemens = np.sqrt(farad / henry) if farad and henry else 1.0
-    if farad:
-        omega0 = siemens / farad
-    elif henry:
-        omega0 = 1.0 / (siemens * henry)
-    else:
-        omega0 = 1.0 / tau if tau else 1.0
+    if omega0 is None:
+        if farad:
+            omega0 = siemens / farad
+        elif henry:
+            omega0 = 1.0 / (siemens * henry)
+        else:
+            omega0 = 1.0 / tau if tau else 1.0
     return {
         "conductance": siemens,
         "capacitance": siemens / omega0,

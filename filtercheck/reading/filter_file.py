@@ -6,8 +6,9 @@ from collections.abc import Iterator, Mapping
 from typing import cast
 
 from filtercheck.errors import InputError, InputErrors, bounded
-from filtercheck.model.requirement import Requirement
+from filtercheck.model.requirement import Requirement, Sampling
 from filtercheck.model.subject import Connection, Name, Section, Subject
+from filtercheck.quantities import parse
 from filtercheck.reading import schema
 from filtercheck.reading.links import loose_ends
 from filtercheck.reading.parts import parts
@@ -40,7 +41,7 @@ def subject(text: str, file: str) -> Subject:
         connections=tuple(_connections(source)),
         parts=parts(source, faults),
         outputs={key: _name(source, "outputs", key) for key in _keys(source, "outputs")},
-        requirements=tuple(_requirements(source)),
+        requirements=tuple(_requirements(source, faults)),
         at=source.values["filter",],
     )
     stated = {part: source.at("parts", part) for part in _keys(source, "parts")}
@@ -84,15 +85,17 @@ def _connections(source: Source) -> Iterator[Connection]:
         )
 
 
-def _requirements(source: Source) -> Iterator[Requirement]:
+def _requirements(source: Source, faults: list[InputError]) -> Iterator[Requirement]:
     for name in _keys(source, "requirements"):
-        data = cast("Mapping[str, str]", _data(source, "requirements", name))
+        data = cast("Mapping[str, Data]", _data(source, "requirements", name))
+        verify = data.get("verify", "worst-case")
         rules = schema.schema("filter")["definitions"][f"kind-{data['kind']}"]["properties"]
         yield Requirement(
             name=name,
-            kind=data["kind"],
-            output=data["output"],
-            verify=data["verify"],
+            kind=str(data["kind"]),
+            output=str(data["output"]),
+            verify=verify if isinstance(verify, str) else "yield",
+            sampling=None if isinstance(verify, str) else _sampling(source, name, faults),
             settings={
                 key: schema.converted(value, rules[key])
                 for key, value in data.items()
@@ -101,6 +104,28 @@ def _requirements(source: Source) -> Iterator[Requirement]:
             places={key: source.values["requirements", name, key] for key in data},
             at=source.at("requirements", name),
         )
+
+
+def _sampling(source: Source, name: str, faults: list[InputError]) -> Sampling:
+    """Return what a yield must be; add what no sample could show."""
+    path = ("requirements", name, "verify")
+    data = cast("Mapping[str, Data]", _data(source, *path))
+    share, confidence = (parse(str(data[key]), "percentage") for key in ("yield", "confidence"))
+    boards = parse(str(data.get("boards", "100000")), "number")
+    for key, right, allowed in (
+        ("yield", share < 1.0, "less than 100 %: `verify: worst-case` is for every board"),
+        ("confidence", confidence < 1.0, "less than 100 %"),
+        ("boards", boards.is_integer() and 100 <= boards <= 1e7, "a whole number, 100 to 10000000"),
+    ):
+        if not right:
+            found, fix = str(data[key]), f"mend `{key}` of {name}"
+            problem = f"no sample of boards can show this `{key}`"
+            faults.append(
+                InputError(
+                    problem, source.values[(*path, key)], found=found, allowed=allowed, fix=fix
+                )
+            )
+    return Sampling(share, confidence, int(boards))
 
 
 def _data(source: Source, *path: str | int) -> Data | Mapping[str, Data]:

@@ -13,6 +13,7 @@ from filtercheck.position import Position
 from filtercheck.preferred import is_member, nearest, neighbours
 from filtercheck.quantities import parse, rounded
 from filtercheck.reading.source import Data, Source
+from filtercheck.wording import listed
 
 QUANTITIES = ("resistance", "capacitance", "inductance")
 # The letter of a designator's class, for parts that state an `ideal` value alone. Source: IEC
@@ -59,7 +60,7 @@ def _part(designator: str, data: Keys, source: Source) -> Part:
         value,
         None,
         series,
-        _tolerance(designator, data, source),
+        *_variation(designator, data, source),
         False,
         place,
     )
@@ -112,9 +113,38 @@ def _preferred(designator: str, data: Keys, source: Source) -> Passive:
         nearest(ideal, series),
         ideal,
         series,
-        _tolerance(designator, data, source),
+        *_variation(designator, data, source),
         False,
         source.at("parts", designator),
+    )
+
+
+def _variation(
+    designator: str, data: Keys, source: Source
+) -> tuple[Spread | None, str | None, float | None, str]:
+    """Return tolerance, matched network, track and distribution."""
+    if ("network" in data) != ("track" in data) or ("track" in data and "tolerance" not in data):
+        raise InputError(
+            f"{designator} is only half a member of a matched network",
+            source.at("parts", designator),
+            found=listed(key for key in ("network", "track", "tolerance") if key in data),
+            allowed="`network`, `track` and `tolerance` together",
+            fix="add the ones that are missing",
+        )
+    track = parse(str(data["track"]), "percentage") if "track" in data else None
+    if track is not None and track >= 1.0:
+        raise InputError(
+            f"the track of {designator} leaves no range of positive values",
+            source.values["parts", designator, "track"],
+            found=str(data["track"]),
+            allowed="less than 100 %",
+            fix="mend the track",
+        )
+    return (
+        _tolerance(designator, data, source),
+        str(data["network"]) if "network" in data else None,
+        track,
+        str(data.get("distribution", "uniform")),
     )
 
 
@@ -139,7 +169,7 @@ def _tolerance(designator: str, data: Keys, source: Source) -> Spread | None:
 
 
 def _op_amp(designator: str, data: Keys, source: Source) -> OpAmp:
-    for key in ("series", "tolerance"):
+    for key in ("series", "tolerance", "network", "track"):
         if key in data:
             raise InputError(
                 f"an amplifier has no {key}",
@@ -150,14 +180,16 @@ def _op_amp(designator: str, data: Keys, source: Source) -> OpAmp:
             )
     stated = data["amplifier"]
     place = source.at("parts", designator)
+    distribution = str(data.get("distribution", "uniform"))
     if isinstance(stated, str):  # the word `ideal`
-        return OpAmp(designator, None, None, False, place)
+        return OpAmp(designator, None, None, distribution, False, place)
     figures = cast("Mapping[str, Data]", stated)
     at = source.values["parts", designator, "amplifier"]
     return OpAmp(
         designator,
         _figure(figures["gain_bandwidth"], "frequency", at),
         _figure(figures["open_loop_gain"], "voltage-gain", at),
+        distribution,
         False,
         place,
     )
@@ -170,14 +202,27 @@ def _figure(stated: Data, quantity: str, at: Position) -> Figure | None:
     if isinstance(stated, str):
         value = parse(stated, quantity)
         return Figure(value, value, value)
-    given = {key: parse(str(text), quantity) for key, text in cast("Keys", stated).items()}
-    figure = Figure(given["typical"], given["min"], given["max"])
-    if not figure.min <= figure.typical <= figure.max:
+    data = cast("Keys", stated)
+    if ({"min", "max"} <= data.keys()) == ("tolerance" in data):
         raise InputError(
-            "the figures are not in rising order",
+            "the figure's limits are missing, or given twice",
             at,
-            found=", ".join(f"{key} {text}" for key, text in cast("Keys", stated).items()),
-            allowed="min, typical and max in rising order",
+            found=listed(data),
+            allowed="`min` and `max`, or `tolerance`, beside `typical`",
+            fix="add `tolerance: 30 %`" if "tolerance" not in data else "delete `tolerance`",
+        )
+    given = {key: parse(str(text), quantity) for key, text in data.items() if key != "tolerance"}
+    typical = given["typical"]
+    if "tolerance" in data:
+        tolerance = parse(str(data["tolerance"]), "percentage")
+        given |= {"min": typical * (1.0 - tolerance), "max": typical * (1.0 + tolerance)}
+    figure = Figure(typical, given["min"], given["max"])
+    if not 0.0 < figure.min <= figure.typical <= figure.max:
+        raise InputError(
+            "the figures are not in rising order above 0",
+            at,
+            found=", ".join(f"{key} {text}" for key, text in data.items()),
+            allowed="min, typical and max in rising order; a tolerance below 100 %",
             fix="mend the figures",
         )
     return figure

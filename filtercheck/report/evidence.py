@@ -7,6 +7,7 @@ that equal inputs give equal bytes whatever the versions of the libraries undern
 from __future__ import annotations
 
 import json
+from collections.abc import Iterable
 from math import isfinite, isnan
 
 from filtercheck import __version__
@@ -55,6 +56,9 @@ def _part(part: Part) -> Json:
             "ideal": None if part.ideal is None else _number(part.ideal),
             "series": part.series,
             "tolerance": _spread(part.tolerance),
+            "network": part.network,
+            "track": None if part.track is None else _number(part.track),
+            "distribution": part.distribution,
             "changed": part.changed,
         }
     return {
@@ -63,6 +67,7 @@ def _part(part: Part) -> Json:
             "open_loop_gain": _figure(part.open_loop_gain),
         },
         "unit": "gain_bandwidth in Hz, open_loop_gain in V/V",
+        "distribution": part.distribution,
         "changed": part.changed,
     }
 
@@ -86,6 +91,7 @@ def _requirement(verdict: Verdict) -> Json:
         "summary": sentences.summary(verdict),
         "line": verdict.at.line,
         "findings": [_finding(finding) for finding in verdict.findings],
+        "unstable_board": _board(verdict.unstable),
     }
 
 
@@ -97,10 +103,28 @@ def _finding(finding: Finding) -> Json:
         "value": _number(finding.value),
         "unit": QUANTITIES[finding.quantity].unit,
         "margin": _number(finding.reached),
+        "margin_proved": _number(finding.certain),
         "margin_unit": "dB" if finding.margin_quantity == "level" else "fraction of the limit",
         "frequency_hz": None if finding.freq_hz is None else _number(finding.freq_hz),
+        "reference_hz": None if finding.reference_hz is None else _number(finding.reference_hz),
         "note": finding.note,
+        "interval": None if finding.interval is None else [_number(n) for n in finding.interval],
+        "worst_board": _board(finding.worst),
+        "margin_per_percent": {name: _number(change) for name, change in finding.sensitivities},
     }
+
+
+def _board(parts: Iterable[Part]) -> Json:
+    """Return the values of a board, passives by designator, amplifiers by figure."""
+    values: dict[str, Json] = {}
+    for part in parts:
+        if isinstance(part, Passive):
+            values[part.designator] = part.value
+            continue
+        figures = {"gain_bandwidth": part.gain_bandwidth, "open_loop_gain": part.open_loop_gain}
+        for name, figure in figures.items():
+            values[f"{part.designator}.{name}"] = figure.typical if figure else "ideal"
+    return values or None
 
 
 def _fault(fault: InputError) -> Json:

@@ -8,20 +8,20 @@ an <error> of the suite "files".
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Iterator
 from xml.etree import ElementTree as ET
 
 from junit_xml import TestCase, TestSuite
 
 from filtercheck.errors import InputError
-from filtercheck.model.verdict import Outcome, Run, Verdict
+from filtercheck.model.verdict import Judged, Outcome, Run, Verdict
 from filtercheck.report import sentences
 from filtercheck.wording import visible
 
 
 def render(run: Run) -> str:
     """Return the whole document; equal runs give equal bytes."""
-    suites = [TestSuite(one.name, [_case(v) for v in one.verdicts]) for one in run.filters]
+    suites = [TestSuite(one.name, [_case(v, one) for v in one.verdicts]) for one in run.filters]
     if run.faults:
         suites.append(TestSuite("files", _faults(run.faults)))
     root = ET.Element("testsuites")
@@ -42,7 +42,7 @@ def _plain(suite: ET.Element) -> ET.Element:
     return suite
 
 
-def _case(verdict: Verdict) -> TestCase:
+def _case(verdict: Verdict, judged: Judged) -> TestCase:
     case = TestCase(verdict.requirement, classname=f"{verdict.filter}.{verdict.kind}")
     summary = sentences.summary(verdict)
     details = "\n".join(
@@ -50,6 +50,7 @@ def _case(verdict: Verdict) -> TestCase:
             f"{verdict.filter} {verdict.requirement}: {verdict.kind} of {verdict.output}",
             *([] if verdict.findings else [summary]),
             *(sentences.said(finding) for finding in verdict.findings),
+            *_boards(verdict, judged),
             f"verified: {verdict.verify}",
             visible(str(verdict.at)),
         ]
@@ -61,6 +62,16 @@ def _case(verdict: Verdict) -> TestCase:
     elif verdict.outcome is Outcome.UNDECIDED:
         case.add_error_info(summary, details)
     return case
+
+
+def _boards(verdict: Verdict, judged: Judged) -> Iterator[str]:
+    """Yield the boards that explain a verdict."""
+    if verdict.unstable:
+        yield f"a board that oscillates: {sentences.board(verdict.unstable)}"
+    for finding in verdict.findings[:1]:
+        if finding.worst:
+            yield f"worst board: {sentences.board(finding.worst)}"
+            yield f"to compute it: {sentences.recomputed(verdict, finding, judged)}"
 
 
 def _faults(faults: Iterable[InputError]) -> list[TestCase]:

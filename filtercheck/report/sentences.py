@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
-from math import inf, isnan
+from collections.abc import Iterable
+from math import inf, isfinite, isnan
 
 from filtercheck.model.part import Figure, OpAmp, Part, Passive
-from filtercheck.model.verdict import Finding, Outcome, Run, Verdict
+from filtercheck.model.verdict import Finding, Judged, Outcome, Run, Verdict
 from filtercheck.quantities import rounded
 from filtercheck.wording import visible
 
@@ -51,8 +52,69 @@ def value(finding: Finding) -> str:
 
 def margin(finding: Finding) -> str:
     """Return the margin with its sign: '-0.123 dB', '+2.1 %'."""
-    text = rounded(finding.reached, finding.margin_quantity, digits=3)
-    return f"+{text}" if finding.reached > 0.0 else text
+    number = finding.value - finding.limit if finding.interval else finding.reached
+    text = rounded(number, finding.margin_quantity, digits=3)
+    return f"+{text}" if number > 0.0 else text
+
+
+def _share(finding: Finding) -> str:
+    low, high = (rounded(end, finding.quantity, digits=5) for end in finding.interval or ())
+    required = rounded(finding.limit, finding.quantity, digits=5)
+    text = f"{finding.subject} {rounded(finding.value, finding.quantity, digits=5)}, "
+    return f"{text}{finding.sense} {required}: it is from {low} to {high} ({visible(finding.note)})"
+
+
+def proved(finding: Finding) -> str:
+    """Return what is proved for every board: 'proved +0.12 dB', or that nothing is."""
+    if finding.certain == -inf or isnan(finding.certain):
+        return "nothing proved"
+    text = rounded(finding.certain, finding.margin_quantity, digits=3)
+    return f"proved {'+' if finding.certain > 0.0 else ''}{text}"
+
+
+def board(parts: Iterable[Part]) -> str:
+    """Return the values of a board: 'R1 9.9 kΩ, C2 10.5 nF'."""
+    return ", ".join(fitted(part) for part in parts)
+
+
+def varied(finding: Finding, judged: Judged) -> list[Part]:
+    """Return the parts of the worst board that are not as fitted."""
+    stated = {part.designator: part for part in judged.parts}
+    return [part for part in finding.worst if _differs(part, stated[part.designator])]
+
+
+def _differs(part: Part, stated: Part) -> bool:
+    if isinstance(part, Passive) and isinstance(stated, Passive):
+        return part.value != stated.value
+    return part != stated
+
+
+def recomputed(verdict: Verdict, finding: Finding, judged: Judged) -> str:
+    """Return the command that computes the worst board's response at the closest approach."""
+    places = [freq for freq in (finding.freq_hz, finding.reference_hz) if freq is not None]
+    settings = [f"--set {one}" for part in varied(finding, judged) for one in _settings(part)]
+    at = ",".join(f"{freq:.12g}" for freq in places if isfinite(freq)) or "1k"
+    words = [f"filtercheck response {judged.file}", f"--output {verdict.output}", f"--at {at}"]
+    return visible(" ".join([*words, *settings]))
+
+
+def _settings(part: Part) -> list[str]:
+    if isinstance(part, Passive):
+        return [f"{part.designator}={part.value:.10g}"]
+    figures = {"gain_bandwidth": part.gain_bandwidth, "open_loop_gain": part.open_loop_gain}
+    return [
+        f"{part.designator}.{name}={figure.typical:.10g}"
+        for name, figure in figures.items()
+        if figure
+    ]
+
+
+def sensitive(finding: Finding, most: int) -> str:
+    """Return the parts that the margin depends on most: 'R3 -0.083 dB, R1 +0.08 dB'."""
+    return ", ".join(
+        f"{name} {'+' if change > 0.0 else ''}{rounded(change, finding.margin_quantity, digits=2)}"
+        for name, change in finding.sensitivities[:most]
+    )
 
 
 def place(finding: Finding) -> str:
@@ -71,11 +133,15 @@ def summary(verdict: Verdict) -> str:
 
 def said(finding: Finding) -> str:
     """Return a finding in one line."""
+    if finding.interval:
+        return _share(finding)
     if isnan(finding.value):
         return f"no {finding.subject}, {visible(finding.note) or 'for no reason that is known'}"
     where = "" if finding.quantity == "frequency" else f" at {place(finding)}"
     text = f"{finding.subject} {value(finding)}{where}, {finding.sense} "
     text += f"{rounded(finding.limit, finding.quantity)}: margin {margin(finding)}"
+    if finding.worst:
+        text += f", {proved(finding)}"
     return f"{text} ({visible(finding.note)})" if finding.note else text
 
 
@@ -91,6 +157,14 @@ def fitted(part: Part) -> str:
 
 def _figure(figure: Figure | None, quantity: str) -> str:
     return rounded(figure.typical, quantity) if figure else "ideal"
+
+
+def is_exact(part: Part) -> bool:
+    """Whether nothing of a part may vary."""
+    if isinstance(part, Passive):
+        return part.tolerance is None
+    figures = [figure for figure in (part.gain_bandwidth, part.open_loop_gain) if figure]
+    return all(figure.min == figure.max for figure in figures)
 
 
 def ideal_figures(part: Part) -> str:

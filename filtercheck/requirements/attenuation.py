@@ -8,7 +8,7 @@ elsewhere.
         band: [4 kHz, up]
         min: 40 dB
         reference: 100 Hz
-        verify: nominal
+        verify: worst-case
 
 The attenuation is the gain at the reference less the gain in the band, both of
 the same board. In the place of `reference`, a pass band may be stated: its
@@ -31,6 +31,7 @@ from filtercheck.network.curve import Curve
 from filtercheck.quantities import rounded
 from filtercheck.requirements import levels
 from filtercheck.requirements.kind import Kind
+from filtercheck.tolerance.limit import Claim, Limit, Pull, shifted
 
 
 @dataclass(frozen=True)
@@ -57,8 +58,18 @@ class Attenuation:
             reached=near.margin_db,
             margin_quantity="level",
             freq_hz=near.freq_hz,
+            reference_hz=top.freq_hz,
             note=f"below the gain at {place}, {rounded(top.gain_db, 'level')}",
         )
+
+    def claims(self, index: int, margin: float) -> Iterator[Claim]:
+        """Yield the gain's limit below the reference, so much tighter."""
+        levels_db = tuple((freq, -level) for freq, level in self.min_db)
+        yield Limit("at most", shifted(levels_db, -margin), self.band_hz, self.reference.any_of())
+
+    def pull(self, finding: Finding) -> Pull | None:
+        """Return the gain at the closest approach, less that at the reference."""
+        return levels.pull(raised_hz=finding.freq_hz, lowered_hz=finding.reference_hz)
 
 
 def read(requirement: Requirement) -> Attenuation:

@@ -9,7 +9,7 @@ limits.
         reference: 100 Hz
         side: above
         within: [950 Hz, 1050 Hz]
-        verify: nominal
+        verify: worst-case
 
 The corner frequency is the first one, going up from the reference (`side:
 above`, for a low-pass) or down from it (`side: below`, for a high-pass), at
@@ -35,6 +35,7 @@ from filtercheck.quantities import rounded
 from filtercheck.requirements import levels
 from filtercheck.requirements.kind import Kind
 from filtercheck.requirements.numbers import within
+from filtercheck.tolerance.limit import Claim, Limit, Pull
 
 
 @dataclass(frozen=True)
@@ -66,8 +67,29 @@ class Corner:
             subject="corner frequency",
             quantity="frequency",
             freq_hz=corner_hz,
+            reference_hz=top.freq_hz,
             note=note,
         )
+
+    def claims(self, index: int, margin: float) -> Iterator[Claim]:
+        """Yield that the gain has fallen at the far limit, or has not before the near one."""
+        low, high = self.within_hz
+        edge = low * (1.0 + margin) if index == 0 else high * (1.0 - margin)
+        fallen = ((0.0, -self.fall_db),)
+        if self.upward == (index == 1):
+            yield Limit("at most", fallen, (edge, edge), self.reference.any_of())
+            return
+        start_hz, end_hz = self.reference.span_hz
+        side = "above" if self.upward else "below"
+        stretch = (start_hz, edge) if self.upward else (edge, end_hz)
+        if stretch[0] < stretch[1]:
+            yield Limit("at least", fallen, stretch, self.reference.every_of(side))
+
+    def pull(self, finding: Finding) -> Pull | None:
+        """Return the gain at the corner less that at the reference, or the reverse."""
+        if self.upward == (finding.sense == "at most"):
+            return levels.pull(raised_hz=finding.freq_hz, lowered_hz=finding.reference_hz)
+        return levels.pull(raised_hz=finding.reference_hz, lowered_hz=finding.freq_hz)
 
 
 def read(requirement: Requirement) -> Corner:

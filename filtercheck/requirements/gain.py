@@ -7,7 +7,7 @@
         band: [10 Hz, 800 Hz]
         min: -0.5 dB
         max: 0.3 dB
-        verify: nominal
+        verify: worst-case
 
 Either limit may be left out. A limit that changes over the band is given at
 several frequencies, and is straight between them in dB over the logarithm of
@@ -30,6 +30,7 @@ from filtercheck.model.verdict import Finding
 from filtercheck.network.curve import Curve
 from filtercheck.requirements import levels
 from filtercheck.requirements.kind import Kind
+from filtercheck.tolerance.limit import Claim, Limit, Pull, shifted
 
 
 @dataclass(frozen=True)
@@ -54,6 +55,18 @@ class Gain:
                 margin_quantity="level",
                 freq_hz=near.freq_hz,
             )
+
+    def claims(self, index: int, margin: float) -> Iterator[Claim]:
+        """Yield the limit, so much tighter."""
+        sense, limit_db = self.limits[index]
+        inward = margin if sense == "at least" else -margin
+        yield Limit(sense, shifted(limit_db, inward), self.band_hz)
+
+    def pull(self, finding: Finding) -> Pull | None:
+        """Return the gain at the closest approach."""
+        if finding.freq_hz is None:
+            return None
+        return Pull(((finding.freq_hz, 1 if finding.sense == "at most" else -1),))
 
 
 def read(requirement: Requirement) -> Gain:

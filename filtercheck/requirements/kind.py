@@ -9,13 +9,23 @@ from typing import Protocol
 from filtercheck.model.requirement import Requirement
 from filtercheck.model.verdict import Finding
 from filtercheck.network.curve import Curve
+from filtercheck.tolerance.limit import Claim, Pull
 
 
 class Wanted(Protocol):
     """What one requirement asks for, read and found sound."""
 
     def findings(self, curve: Curve) -> Iterator[Finding]:
-        """Yield how near one board's response comes to each limit, or how far beyond it."""
+        """Yield how near one board's response comes to each limit, or how far beyond it.
+
+        For every board there are as many findings, in the same order.
+        """
+
+    def claims(self, index: int, margin: float) -> Iterator[Claim]:
+        """Yield what, if it holds for a board, gives its finding of that number the margin."""
+
+    def pull(self, finding: Finding) -> Pull | None:
+        """Return which gains made the margin what it is; None where it is not one of gains."""
 
 
 @dataclass(frozen=True)

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 from dataclasses import dataclass
 from itertools import pairwise
-from math import inf, nan
+from math import inf, isnan, nan
 
 import numpy as np
 
@@ -13,6 +13,8 @@ from filtercheck.model.requirement import Band, Mask, Requirement
 from filtercheck.network.curve import EVERYWHERE, Curve, Point
 from filtercheck.network.ratio import Real
 from filtercheck.quantities import rounded
+from filtercheck.tolerance import limit as tolerance
+from filtercheck.tolerance.limit import Pull
 
 
 @dataclass(frozen=True)
@@ -120,6 +122,23 @@ class Reference:
             return Point(self.freq_hz, curve.gain_db(self.freq_hz))
         return curve.highest(self.passband_hz or EVERYWHERE)
 
+    def any_of(self) -> tolerance.Reference:
+        """Return it for a limit that is kept once it is kept from one frequency: the largest
+        gain of a pass band is at least that anywhere in it."""
+        return tolerance.Reference(self.span_hz, every=False)
+
+    def every_of(self, side: str) -> tolerance.Reference:
+        """Return it for a limit, on one side of it, that must be kept from the largest gain,
+        wherever in the pass band that is."""
+        return tolerance.Reference(self.span_hz, every=True, side=side)
+
+    @property
+    def span_hz(self) -> Band:
+        """Between what frequencies it lies; equal ends are one frequency."""
+        if self.freq_hz is not None:
+            return self.freq_hz, self.freq_hz
+        return self.passband_hz or EVERYWHERE
+
 
 def reference(requirement: Requirement) -> Reference:
     """Return what a relative requirement refers to.
@@ -139,6 +158,13 @@ def reference(requirement: Requirement) -> Reference:
             "delete one of them" if both else "add `reference: 100 Hz`, or `passband: [ , ]`",
         )
     return Reference(freq_hz, passband_hz)
+
+
+def pull(*, raised_hz: float | None, lowered_hz: float | None) -> Pull | None:
+    """Return the gain at one frequency less that at another; None where there are none."""
+    if raised_hz is None or lowered_hz is None or isnan(raised_hz) or isnan(lowered_hz):
+        return None
+    return Pull(((raised_hz, 1), (lowered_hz, -1)))
 
 
 def _hertz(freq_hz: float) -> str:

@@ -16,6 +16,7 @@ def within(
     subject: str,
     quantity: str,
     freq_hz: float | None,
+    reference_hz: float | None = None,
     note: str,
 ) -> Iterator[Finding]:
     """Yield a finding for each of two limits on a number; the margin is a fraction of the limit.
@@ -36,5 +37,6 @@ def within(
             reached=margin,
             margin_quantity="percentage",
             freq_hz=freq_hz,
+            reference_hz=reference_hz,
             note=note,
         )

@@ -1,4 +1,4 @@
-"""Keep the centre frequency and the Q of a band-pass between limits.
+"""Keep the centre frequency and the Q of a resonance between limits.
 
     requirements:
       VIB-5:
@@ -6,31 +6,35 @@
         output: bandpass
         centre: [4.9 kHz, 5.1 kHz]
         q: [9.5, 10.5]
-        verify: nominal
+        verify: worst-case
 
-Both are those of the response, as measured on a bench: f1 and f2 are where the
-power has fallen to half on either side of the largest gain; the centre
-frequency is the geometric mean of f1 and f2, and Q is the centre frequency
-over f2 - f1. For a section of second order these are f0 and Q of its pole
-pair. Either `centre` or `q` may be left out.
+Both are those of the pole pair p with the highest Q among all poles of the
+response: the centre frequency is |p|/(2 pi), and Q is |p|/(-2 Re p). For a
+band-pass of second order these are the frequency of the largest gain, and that
+frequency over the distance of the half-power points; a low-pass or a high-pass
+has both as well. A response whose poles are all real has no resonance, and
+fails. Either `centre` or `q` may be left out.
 
-Source: common practice, no source. For a second-order band-pass |H| is
-symmetric in the logarithm of frequency about f0, and f2 - f1 = f0/Q.
+Source: common practice, no source. The denominator of second order is
+s^2 + s w0/Q + w0^2.
 """
 
 from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
-from math import isfinite, log10, sqrt
+from math import pi
+
+import numpy as np
 
 from filtercheck.model.requirement import Band, Requirement
 from filtercheck.model.verdict import Finding
 from filtercheck.network.curve import Curve
 from filtercheck.requirements.kind import Kind
 from filtercheck.requirements.numbers import within
+from filtercheck.tolerance.limit import Claim, Poles, Pull
 
-HALF_POWER_DB = 10.0 * log10(2.0)
+SUBJECTS = {"centre frequency": ("centre", "frequency"), "Q": ("Q", "number")}
 
 
 @dataclass(frozen=True)
@@ -42,34 +46,48 @@ class Resonance:
 
     def findings(self, curve: Curve) -> Iterator[Finding]:
         """Yield centre frequency and Q, each against both limits."""
-        edges = _edges_hz(curve)
-        centre_hz = sqrt(edges[0] * edges[1]) if edges else None
-        q = centre_hz / (edges[1] - edges[0]) if edges and centre_hz else None
-        note = "" if edges else "the power does not fall to half on both sides of a peak"
-        if self.centre_hz:
+        pole = _sharpest(curve)
+        centre_hz = abs(pole) / (2.0 * pi) if pole else None
+        q = abs(pole) / (-2.0 * pole.real) if pole else None
+        note = "" if pole else "all poles are real"
+        for subject, value, limits in self._numbers(centre_hz, q):
             yield from within(
-                self.centre_hz,
-                centre_hz,
-                subject="centre frequency",
-                quantity="frequency",
+                limits,
+                value,
+                subject=subject,
+                quantity=SUBJECTS[subject][1],
                 freq_hz=centre_hz,
                 note=note,
             )
+
+    def _numbers(
+        self, centre_hz: float | None, q: float | None
+    ) -> Iterator[tuple[str, float | None, Band]]:
+        if self.centre_hz:
+            yield "centre frequency", centre_hz, self.centre_hz
         if self.q:
-            yield from within(
-                self.q, q, subject="Q", quantity="number", freq_hz=centre_hz, note=note
-            )
+            yield "Q", q, self.q
 
+    def claims(self, index: int, margin: float) -> Iterator[Claim]:
+        """Yield the limit of the pole, so much tighter."""
+        subject, _, limits = list(self._numbers(None, None))[index // 2]
+        sense, sign = (("at least", 1.0), ("at most", -1.0))[index % 2]
+        yield Poles(SUBJECTS[subject][0], sense, limits[index % 2] * (1.0 + sign * margin))
 
-def _edges_hz(curve: Curve) -> Band | None:
-    """Return where the power is half of the largest, on both sides; None where it is not."""
-    peak = curve.highest()
-    if not (isfinite(peak.gain_db) and peak.freq_hz > 0.0 and isfinite(peak.freq_hz)):
+    def pull(self, finding: Finding) -> Pull | None:
+        """Return None: no gain makes a pole what it is."""
         return None
-    level_db = peak.gain_db - HALF_POWER_DB
-    below = curve.fall_hz(peak.freq_hz, level_db, upward=False)
-    above = curve.fall_hz(peak.freq_hz, level_db, upward=True)
-    return (below, above) if below is not None and above is not None else None
+
+
+def _sharpest(curve: Curve) -> complex | None:
+    """Return the pole with the highest Q, the lowest of equals; None where all are real."""
+    poles = curve.response.poles
+    pairs = poles[poles.imag > 0.0]
+    if not len(pairs):
+        return None
+    with np.errstate(divide="ignore"):
+        q = np.abs(pairs) / (-2.0 * pairs.real)
+    return complex(min(pairs[q >= q.max() * (1.0 - 1e-12)], key=abs))
 
 
 def read(requirement: Requirement) -> Resonance:

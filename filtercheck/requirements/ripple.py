@@ -6,7 +6,7 @@
         output: lowpass
         band: [10 Hz, 700 Hz]
         max: 0.5 dB
-        verify: nominal
+        verify: worst-case
 
 The ripple is peak to peak: the largest gain in the band less the smallest, its
 ends included, both of the same board.
@@ -25,6 +25,7 @@ from filtercheck.network.curve import Curve
 from filtercheck.quantities import rounded
 from filtercheck.requirements import levels
 from filtercheck.requirements.kind import Kind
+from filtercheck.tolerance.limit import Claim, Limit, Pull, Reference
 
 
 @dataclass(frozen=True)
@@ -48,8 +49,18 @@ class Ripple:
             reached=self.max_db - ripple_db,
             margin_quantity="level",
             freq_hz=low.freq_hz,
+            reference_hz=high.freq_hz,
             note=f"lowest there, highest at {rounded(high.freq_hz, 'frequency')}",
         )
+
+    def claims(self, index: int, margin: float) -> Iterator[Claim]:
+        """Yield that no gain of the band lies higher above another than so much less."""
+        every = Reference(self.band_hz, every=True)
+        yield Limit("at most", ((0.0, self.max_db - margin),), self.band_hz, every)
+
+    def pull(self, finding: Finding) -> Pull | None:
+        """Return the highest gain less the lowest."""
+        return levels.pull(raised_hz=finding.reference_hz, lowered_hz=finding.freq_hz)
 
 
 def read(requirement: Requirement) -> Ripple:

@@ -4,9 +4,13 @@ from __future__ import annotations
 
 from dataclasses import replace
 from math import inf, pi
+from typing import TypeVar
 
-from filtercheck.model.part import OpAmp, Part, Passive
+from filtercheck.model.part import Figure, OpAmp, Part, Passive
 from filtercheck.network.elements import Amplifier, Element, Symbol
+from filtercheck.network.ratio import Real
+
+Number = TypeVar("Number", float, Real)
 
 _NOUNS = {
     "resistance": "a resistor",
@@ -39,8 +43,32 @@ def as_real_as(part: Part, element: Element) -> Element:
 
 def value(symbol: Symbol, part: Part) -> float:
     """Return the value of a symbol in SI units, from the part as fitted."""
+    return as_symbol(symbol.kind, number(part, symbol.kind))
+
+
+def number(part: Part, kind: str) -> float:
+    """Return what a part, or its figure that a kind of symbol stands for, is as fitted. [SI]"""
     if isinstance(part, Passive):
-        return 1.0 / part.value if part.quantity == "resistance" else part.value
-    if symbol.kind == "inverse gain":
-        return 1.0 / (part.open_loop_gain.typical if part.open_loop_gain else inf)
-    return 1.0 / (2.0 * pi * (part.gain_bandwidth.typical if part.gain_bandwidth else inf))
+        return part.value
+    figure = part.open_loop_gain if kind == "inverse gain" else part.gain_bandwidth
+    return figure.typical if figure else inf
+
+
+def with_number(part: Part, kind: str, number: float) -> Part:
+    """Return the part with its value, or the figure that a kind of symbol stands for, so."""
+    if isinstance(part, Passive):
+        return replace(part, value=number)
+    figure = Figure(number, number, number)
+    if kind == "inverse gain":
+        return replace(part, open_loop_gain=figure)
+    return replace(part, gain_bandwidth=figure)
+
+
+def as_symbol(kind: str, number: Number) -> Number:
+    """Return the value of a kind of symbol for the value of a part or of its figure. [SI]
+
+    The way back is the same, but for capacitances and inductances, which are what they are.
+    """
+    if kind in ("capacitance", "inductance"):
+        return number
+    return 1.0 / (2.0 * pi * number) if kind == "inverse bandwidth" else 1.0 / number

@@ -39,11 +39,19 @@ class Wiring:
         NetworkError
             If the equations are singular at these values.
         """
-        fed = [_response(group, group.drive, parts) for group in self.groups]
-        return {
-            output: product([*fed[:last], _response(self.groups[last], node, parts)])
-            for output, (last, node) in self.outputs.items()
-        }
+        return {output: self.response(output, parts) for output in self.outputs}
+
+    def response(self, output: str, parts: Parts) -> Response:
+        """Return the response at one output.
+
+        Raises
+        ------
+        NetworkError
+            If the equations are singular at these values.
+        """
+        last, node = self.outputs[output]
+        fed = [_response(group, group.drive, parts) for group in self.groups[:last]]
+        return product([*fed, _response(self.groups[last], node, parts)])
 
     def whole(self, parts: Parts) -> Response:
         """Return the response through all groups: its factors hold every pole there is."""

@@ -48,7 +48,7 @@ def finding(margin: float) -> Finding:
 def hostile(text: str) -> Run:
     at = Position(f"{text}.yaml", 3, 1, 4, text)
     findings = (replace(finding(-1.0), note=text),)
-    verdict = Verdict("f", "R-1", "gain", "out", "nominal", Outcome.FAIL, findings, text, at)
+    verdict = Verdict("f", "R-1", "gain", "out", "nominal", Outcome.FAIL, findings, text, (), at)
     fault = InputError(text, at, found=text, allowed=text, fix=text)
     return Run("", (Judged("f", text, text, (), (verdict,)),), (fault,), {text: "0" * 64})
 
@@ -121,6 +121,9 @@ def test_evidence_is_valid_and_traces_its_inputs(run: Run) -> None:
         "ideal": 10610.0,
         "series": "E96",
         "tolerance": [-0.01, 0.01],
+        "network": None,
+        "track": None,
+        "distribution": "uniform",
         "changed": False,
     }
     assert split["U101A"]["amplifier"]["gain_bandwidth"]["min"] == 8e6
@@ -186,7 +189,9 @@ def test_console_says_what_the_figures_rest_on() -> None:
 def test_console_copes_with_the_longest_names() -> None:
     name = "n" * 60
     at = Position(f"{'d' * 200}.filter.yaml", 1, 1, 1, "")
-    verdict = Verdict(name, name, "gain", name, "nominal", Outcome.FAIL, (finding(-1e9),), "", at)
+    verdict = Verdict(
+        name, name, "gain", name, "nominal", Outcome.FAIL, (finding(-1e9),), "", (), at
+    )
     text = console.render(Run("", (Judged(name, "", "", (), (verdict,)),), (), {}))
 
     assert max(map(len, text.splitlines())) <= 80

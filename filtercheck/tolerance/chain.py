@@ -1,0 +1,90 @@
+"""Stages in a row, up to an output, and boards of them."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass, replace
+from functools import cached_property
+from math import pi
+
+import numpy as np
+
+from filtercheck.network.ratio import Ratio, Real
+from filtercheck.network.response import Response
+from filtercheck.tolerance.climb import Aim, best_corner, climb, heights
+from filtercheck.tolerance.stage import Stage
+
+Board = tuple[Real, ...]  # a point of the box of every stage
+
+
+@dataclass(frozen=True, eq=False)
+class Chain:
+    """Stages whose responses multiply; `unit` is that of their angular frequency. [rad/s]"""
+
+    stages: tuple[Stage, ...]
+    unit: float
+
+    def omega(self, freq_hz: float) -> float:
+        """Return a frequency in the chain's unit; 0 and infinity are allowed."""
+        return 2.0 * pi * freq_hz / self.unit
+
+    def freq_hz(self, omega: float) -> float:
+        return omega * self.unit / (2.0 * pi)
+
+    @cached_property
+    def relative(self) -> Chain:
+        """The same for ratios of one board's responses at two frequencies: what does not depend
+        on frequency cancels, and values that are in nothing else do not matter."""
+        return Chain(tuple(_reduced(stage) for stage in self.stages), self.unit)
+
+    @property
+    def nominal(self) -> Board:
+        return tuple(stage.box.nominal for stage in self.stages)
+
+    def worst(self, aim: Aim) -> Board:
+        """Return the board where an aim is largest, as far as the ascent from the best corner
+        finds it."""
+        return self.climbed(aim, self.corner(aim))
+
+    def corner(self, aim: Aim) -> Board:
+        """Return the board where an aim is largest among the corners of the boxes."""
+        return tuple(best_corner(stage, aim) for stage in self.stages)
+
+    def climbed(self, aim: Aim, start: Board) -> Board:
+        """Return the board that the ascent from another one finds."""
+        return tuple(
+            climb(stage, aim, point) for stage, point in zip(self.stages, start, strict=True)
+        )
+
+    def heights(self, aim: Aim, board: Board) -> list[float]:
+        """Return the value of an aim on a board, a summand for each stage."""
+        return [
+            float(heights(stage, aim, point[None, :])[0])
+            for stage, point in zip(self.stages, board, strict=True)
+        ]
+
+    def halves(self, omega: float) -> Iterator[Chain]:
+        """Yield the chain with either half of a box, along the coordinate that matters most at a
+        frequency: that along which N and D change most."""
+        changes = [stage.changes(omega) for stage in self.stages]
+        k = max(range(len(changes)), key=lambda i: float(changes[i].max(initial=0.0)))
+        stage = self.stages[k]
+        for box in stage.box.halves(int(stage.box.free[int(np.argmax(changes[k]))])):
+            yield replace(self, stages=(*self.stages[:k], stage.within(box), *self.stages[k + 1 :]))
+
+    def response(self, board: Board) -> Response:
+        """Return the response of a board."""
+        pairs = zip(self.stages, board, strict=True)
+        return Response(tuple(self._ratio(stage, point) for stage, point in pairs))
+
+    def _ratio(self, stage: Stage, point: Real) -> Ratio:
+        values = stage.box.symbol_values(point[None, :])[0]
+        return Ratio.of(
+            stage.numerator.coefficients(values), stage.denominator.coefficients(values), self.unit
+        )
+
+
+def _reduced(stage: Stage) -> Stage:
+    numerator, denominator = stage.numerator.without_common(), stage.denominator.without_common()
+    gone = ~(numerator.members | denominator.members)
+    return Stage(numerator, denominator, stage.box.fixed(gone))

@@ -1,0 +1,167 @@
+"""Many boards at once, on a grid of frequencies that lies where their responses bend.
+
+The power |H|^2 of a board is a ratio of polynomials in w^2, so that a chunk of boards on the
+whole grid is a few matrix products. What lies between two points of the grid is estimated from
+the parabola through the three points about the largest; where that leaves a board's standing in
+doubt, it is for the caller to work the board out exactly.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from functools import cached_property, lru_cache
+
+import numpy as np
+from numpy.typing import NDArray
+
+from filtercheck.network.ratio import Real
+from filtercheck.tolerance.chain import Board, Chain
+from filtercheck.tolerance.limit import DECIBEL, Limit
+
+POINTS = 200  # of a grid
+FINE = 4000  # of the grid that tells where responses bend
+# Of the height of a parabola over its middle point, what it may be wrong by.
+DOUBTFUL = 0.5
+LEAST_DOUBT = 1e-6  # of ln|H|, for rounding
+
+
+def grid(chain: Chain, boards: Board, band: tuple[float, float], span: tuple[float, float]) -> Real:
+    """Return angular frequencies of a band, ends included, in rising order.
+
+    Their density follows the square root of the second derivative of ln|H| by ln w, the largest
+    among some boards, so that a parabola is wrong by as little everywhere.
+
+    Parameters
+    ----------
+    boards : points of every stage, each of shape (S, P + T)
+    span : (float, float)
+        Between what frequencies responses do bend; beyond them a few points are enough.
+    """
+    low, high = (min(max(end, span[0]), span[1]) for end in band)
+    if not low < high:
+        return np.unique([*band])
+    fine = np.geomspace(low, high, FINE)
+    bend = np.abs(np.diff(np.log(power(chain, boards, fine)), n=2, axis=1)).max(axis=0)
+    density = np.sqrt(bend) + 0.05 * np.sqrt(bend.max()) + 1e-12
+    steps = np.concatenate([[0.0], np.cumsum((density[:-1] + density[1:]) / 2.0)])
+    places = np.interp(np.linspace(0.0, steps[-1], POINTS), steps, np.log(fine[1:-1]))
+    return np.unique([band[0], low, *np.exp(places), high, band[1]])
+
+
+def power(chain: Chain, boards: Board, omega: Real) -> Real:
+    """Return |H|^2 of boards at frequencies, shape (S, F); 0 and infinity are allowed."""
+    total: Real = np.ones(1)
+    for stage, points in zip(chain.stages, boards, strict=True):
+        values = stage.box.symbol_values(points)
+        top = _squared(stage.numerator.at_points(values), omega, stage.degree)
+        bottom = _squared(stage.denominator.at_points(values), omega, stage.degree)
+        with np.errstate(divide="ignore", invalid="ignore"):
+            np.divide(top, bottom, out=bottom)
+            total = total * bottom
+    return total
+
+
+def _squared(coefficients: Real, omega: Real, degree: int) -> Real:
+    """Return |P(jw)|^2/(1 + w)^(2 degree), a polynomial in w^2, at frequencies."""
+    squares = _square_coefficients(coefficients)
+    values = squares @ _columns(tuple(omega), degree, squares.shape[1])
+    # Near a null of the response rounding may leave less than nothing.
+    return np.maximum(values, 0.0, out=values)
+
+
+def _square_coefficients(coefficients: Real) -> Real:
+    """Return the coefficients of 1, w^2, w^4, ... of |P(jw)|^2, shape (S, K)."""
+    count = coefficients.shape[1]
+    squares = np.zeros_like(coefficients)
+    for k in range(count):
+        for m in range(k % 2, count, 2):
+            # (j w)^k times the conjugate of (j w)^m, which is real since k - m is even.
+            sign = 1.0 if (k - m) % 4 == 0 else -1.0
+            squares[:, (k + m) // 2] += sign * coefficients[:, k] * coefficients[:, m]
+    return squares
+
+
+@lru_cache(maxsize=256)
+def _columns(omega: tuple[float, ...], degree: int, count: int) -> Real:
+    """Return w^(2k)/(1 + w)^(2 degree) for k below `count`, shape (count, F)."""
+    w = np.array(omega)
+    finite = np.isfinite(w)
+    near, far = np.zeros(len(w)), np.ones(len(w))
+    near[finite] = 1.0 / (1.0 + w[finite])
+    far[finite] = w[finite] / (1.0 + w[finite])
+    return np.array([near ** (2 * (degree - k)) * far ** (2 * k) for k in range(count)])
+
+
+@dataclass(frozen=True)
+class Standing:
+    """By how much each board is beyond a limit, and how wrong that may be; both of ln|H|."""
+
+    excess: Real  # (S,), positive beyond
+    doubt: Real  # (S,)
+
+
+@dataclass(frozen=True, eq=False)
+class Screen:
+    """A limit on a grid."""
+
+    chain: Chain
+    limit: Limit
+    band: Real  # angular frequencies, rising
+    reference: Real  # likewise; empty where there is none
+
+    def standing(self, powers: Callable[[Real], Real]) -> Standing:
+        """Return where boards stand, from their powers on the band and on the reference.
+
+        Parameters
+        ----------
+        powers : callable
+            Frequencies -> |H|^2 of the boards, shape (S, F).
+        """
+        sign, reference = self.limit.sign, self.limit.reference
+        with np.errstate(divide="ignore", invalid="ignore"):
+            gain = powers(self.band)
+            level = gain * self._factor if sign > 0 else self._factor / gain
+            if reference is None:
+                return Standing(*_peak(level))
+            gain = powers(self.reference)
+            if reference.side:
+                level = np.where(self._beside(gain), level, 0.0)
+                return _sum(_peak(level), _peak(gain), -sign)
+            if reference.every:
+                return _sum(_peak(level), _peak(gain**-sign), 1)
+            return _sum(_peak(level), _peak(gain**sign), -1)
+
+    @cached_property
+    def _factor(self) -> Real:
+        """One over the power that is allowed."""
+        allowed = [self.limit.excess_allowed_db(self.chain.freq_hz(w)) for w in self.band]
+        return np.exp(-2.0 * np.array(allowed) / DECIBEL)
+
+    def _beside(self, gain: Real) -> NDArray[np.bool_]:
+        """Return which frequencies are on the limit's side of each board's largest gain."""
+        start = self.reference[np.argmax(gain, axis=1)][:, None]
+        above = self.limit.reference is not None and self.limit.reference.side == "above"
+        return np.asarray(self.band >= start if above else self.band <= start)
+
+
+def _sum(one: tuple[Real, Real], other: tuple[Real, Real], sign: int) -> Standing:
+    return Standing(one[0] + sign * other[0], one[1] + other[1])
+
+
+def _peak(level: Real) -> tuple[Real, Real]:
+    """Return half the logarithm of the largest value between the points of a grid, as the
+    parabola about the largest point has it, and the doubt that is left."""
+    rows, last, at = np.arange(len(level)), level.shape[1] - 1, np.argmax(level, axis=1)
+    middle = np.clip(at, 1, max(last - 1, 0))
+    top = np.log(level[rows, at]) / 2.0
+    if last < 2:
+        return top, np.full(len(level), LEAST_DOUBT)
+    before, here, after = (np.log(level[rows, middle + k]) / 2.0 for k in (-1, 0, 1))
+    bend = 2.0 * here - before - after
+    with np.errstate(divide="ignore", invalid="ignore"):
+        place = np.clip((after - before) / (2.0 * bend), -1.0, 1.0)
+        rise = np.where(bend > 0.0, (after - before) * place / 2.0 - bend * place**2 / 2.0, 0.0)
+    peak = np.maximum(top, np.where(np.isfinite(rise), here + rise, top))
+    doubt = DOUBTFUL * np.abs(peak - top) + np.abs(np.nan_to_num(bend)) * 0.02 + LEAST_DOUBT
+    return peak, doubt

@@ -1,0 +1,148 @@
+"""That no board of a box has a pole on a path in the complex plane: zero exclusion.
+
+A path is s = X(t)/Y(t) with complex X and Y linear in t: the imaginary axis, a ray from the
+origin, an arc about it. With the denominator's forms D_vj on the path (`segment`, `corners`)
+and g(t) linear, Re (g D)_vj > 0 for all nodes v and all j shows that D has no zero on the path,
+for any board of the box; the proof is that of `certificate`, without A.
+
+Poles move continuously with the values. So where a path closes a region and one board has so
+many poles inside, every board of the box has as many: stability from one stable board and the
+imaginary axis (a denominator whose degree keeps), bounds of Q from rays, of f0 from arcs.
+
+Source: Zadeh and Desoer, Linear System Theory (1963; from memory) for zero exclusion.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from math import cos, inf, pi, sin, tan
+
+import numpy as np
+
+from filtercheck.network.ratio import Complex, Real
+from filtercheck.tolerance.certificate import ROUNDING
+from filtercheck.tolerance.segment import Segment, powers, times_linear
+from filtercheck.tolerance.stage import Stage
+
+Ends = tuple[complex, complex]
+
+
+@dataclass(frozen=True)
+class Path:
+    """s = X/Y, where X and Y are linear between their two values."""
+
+    x: Ends
+    y: Ends
+
+    def halves(self) -> tuple[Path, Path]:
+        x, y = (self.x[0] + self.x[1]) / 2.0, (self.y[0] + self.y[1]) / 2.0
+        return Path((self.x[0], x), (self.y[0], y)), Path((x, self.x[1]), (y, self.y[1]))
+
+    def at(self, end: int) -> Path:
+        """Return one end as a path of its own, that does not move."""
+        return Path((self.x[end], self.x[end]), (self.y[end], self.y[end]))
+
+
+def ray(segment: Segment, angle: float) -> Path:
+    """Return the points of a segment of sizes |s|, at one angle; pi/2 is the imaginary axis."""
+    turn = 1j if angle == pi / 2.0 else complex(cos(angle), sin(angle))
+    (x1, y1), (x2, y2) = segment.ends
+    return Path((turn * x1, turn * x2), (y1, y2))
+
+
+def arc(size: float, start: float, end: float) -> Path:
+    """Return the points of one size |s| between two angles, less than a full turn apart.
+
+    s = size e^(jm) (1 + j tau)/(1 - j tau) has the angle m + 2 arctan tau.
+    """
+    middle, reach = (start + end) / 2.0, tan((end - start) / 4.0)
+    turn = size * complex(cos(middle), sin(middle))
+    return Path(
+        (turn * (1 - 1j * reach), turn * (1 + 1j * reach)), (1 + 1j * reach, 1 - 1j * reach)
+    )
+
+
+@dataclass(frozen=True)
+class Doubt:
+    """Where exclusion failed: a part of the box, and a point that a pole may reach."""
+
+    stage: Stage
+    at: complex
+
+
+def doubt(
+    stage: Stage, path: Path, budget: int, probe: Callable[[Stage], bool] = lambda _: False
+) -> Doubt | None:
+    """Return None once no board of the box has a pole on the path, else where that failed.
+
+    Parameters
+    ----------
+    budget : int
+        How many numbers may be computed before the attempt ends.
+    probe : callable
+        Asked about each part of the box before it is divided; true ends the attempt there.
+    """
+    left, work = [(stage, path)], 0
+    while left:
+        part, stretch = left.pop()
+        work += part.denominators.values.size
+        if _excluded(part, stretch):
+            continue
+        middle = stretch.halves()[0].at(1)
+        if work > budget:
+            return Doubt(part, _place(middle))
+        if _excluded(part, middle):
+            left.extend((part, half) for half in reversed(stretch.halves()))
+        elif probe(part):
+            return Doubt(part, _place(middle))
+        else:
+            left.extend(
+                (part.within(box), stretch) for box in part.box.halves(_widest(part, middle))
+            )
+    return None
+
+
+def _place(point: Path) -> complex:
+    return point.x[0] / point.y[0] if point.y[0] else complex(inf)
+
+
+def _excluded(stage: Stage, path: Path) -> bool:
+    nodes = stage.denominators
+    degree = stage.denominator.degree
+    ends = [nodes.values @ powers(path.at(i).x, path.at(i).y, degree).sum(axis=1) for i in (0, 1)]
+    g = tuple(_direction(values) for values in ends)
+    if path.x[0] == path.x[1] and path.y[0] == path.y[1]:
+        size = nodes.size @ np.abs(powers(path.x, path.y, degree)).sum(axis=1)
+        return bool((np.real(g[0] * ends[0]) > ROUNDING * size).all())
+    forms = powers(path.x, path.y, degree)
+    slack = np.real(
+        times_linear((nodes.size @ np.abs(forms)).astype(complex), abs(g[0]), abs(g[1]))
+    )
+    turned = np.real(times_linear(nodes.values @ forms, g[0], g[1]))
+    return bool((turned > ROUNDING * slack).all())
+
+
+def _direction(values: Complex) -> complex:
+    """Return g that turns the nodes towards the positive axis: against the middle of the
+    sector they span, as seen from their mean."""
+    mean = complex(values.mean())
+    if mean == 0.0:
+        return 1.0
+    angles = np.angle(values / mean)
+    middle = (float(angles.min()) + float(angles.max())) / 2.0
+    turned = mean / abs(mean) * complex(cos(middle), sin(middle))
+    return turned.conjugate() / abs(mean)
+
+
+def _widest(stage: Stage, point: Path) -> int:
+    """Return the coordinate along which the denominator changes most at a point."""
+    box = stage.box
+    row = powers(point.x, point.y, stage.denominator.degree).sum(axis=1)
+    change: Real = np.zeros(len(box.free))
+    for k, coordinate in enumerate(box.free):
+        pair = np.tile(box.centre, (2, 1))
+        pair[0, coordinate], pair[1, coordinate] = box.low[coordinate], box.high[coordinate]
+        low, high = stage.denominator.at_points(box.symbol_values(pair)) @ row
+        change[k] = abs(high - low)
+    return int(box.free[int(np.argmax(change))])

@@ -1,0 +1,82 @@
+"""What can be proved for every board of a box: a limit on a level, over a band of frequencies."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from math import log
+
+import numpy as np
+
+DECIBEL = 20.0 / log(10.0)  # dB of a neper
+
+Band = tuple[float, float]  # [Hz]
+Mask = tuple[tuple[float, float], ...]  # (frequency [Hz], level [dB]), rising in frequency
+
+
+@dataclass(frozen=True)
+class Reference:
+    """Frequencies whose gain on the same board a level is measured from."""
+
+    band_hz: Band  # equal ends are one frequency
+    every: bool  # whether the limit holds from each of them, or it is enough to hold from one
+    side: str = ""  # "above" or "below" where it holds on that side of the reference only
+
+
+@dataclass(frozen=True)
+class Limit:
+    """The gain, or the gain less that at a reference, is at least or at most a level.
+
+    The level is straight in dB over the logarithm of frequency between the points of the mask,
+    which span the band; a mask of one point is the same level everywhere.
+    """
+
+    sense: str  # "at least" or "at most"
+    level_db: Mask
+    band_hz: Band
+    reference: Reference | None = None
+
+    @property
+    def sign(self) -> int:
+        """1 where a larger gain is worse, -1 where a smaller one is."""
+        return 1 if self.sense == "at most" else -1
+
+    def excess_allowed_db(self, freq_hz: float) -> float:
+        """Return what sign * gain may be at most. [dB]"""
+        return self.sign * level_at(self.level_db, freq_hz)
+
+
+@dataclass(frozen=True)
+class Poles:
+    """The pole with the highest Q, of size 2 pi f0 and of Q = |p| / (-2 Re p), keeps to a limit."""
+
+    quantity: str  # "centre" [Hz] or "Q"
+    sense: str  # "at least" or "at most"
+    value: float
+
+    @property
+    def sign(self) -> int:
+        """1 where a larger value is worse, -1 where a smaller one is."""
+        return 1 if self.sense == "at most" else -1
+
+
+Claim = Limit | Poles
+
+
+@dataclass(frozen=True)
+class Pull:
+    """What makes a margin smaller: gains, in dB, that rise (1) or fall (-1) at frequencies."""
+
+    terms: tuple[tuple[float, int], ...]  # (frequency [Hz], 1 or -1)
+
+
+def shifted(mask: Mask, by_db: float) -> Mask:
+    """Return a mask with all its levels raised."""
+    return tuple((freq, level + by_db) for freq, level in mask)
+
+
+def level_at(mask: Mask, freq_hz: float) -> float:
+    """Return the level of a mask at a frequency of its span. [dB]"""
+    if len(mask) == 1:
+        return mask[0][1]
+    points, levels = np.array(mask).T
+    return float(np.interp(log(freq_hz), np.log(points), levels))
