@@ -122,4 +122,4 @@ class _Bench:
 
     @cached_property
     def box_standing(self) -> Standing | None:
-        return standing.every_board(self.subject)
+        return standing.every_board(self.subject, self.variation)

@@ -27,7 +27,7 @@ class Polynomial:
     lift: int = 0  # powers of s in front of it all
 
     @cached_property
-    def _table(self) -> tuple[Real, NDArray[np.bool_], NDArray[np.intp]]:
+    def table(self) -> tuple[Real, NDArray[np.bool_], NDArray[np.intp]]:
         """The terms as arrays: coefficients (T,), members (T, P), powers of s (T,)."""
         count = len(self.symbols)
         bits = [[mask >> i & 1 for i in range(count)] for mask in self.terms]
@@ -57,46 +57,11 @@ class Polynomial:
         """
         if not self.terms:
             return np.zeros(1)
-        coefficients, members, powers = self._table
+        coefficients, members, powers = self.table
         products = coefficients * np.where(members, values, 1.0).prod(axis=1)
         total = np.bincount(powers, weights=products)
         size = np.bincount(powers, weights=np.abs(products))
         return np.where(np.abs(total) > 1e-14 * size, total, 0.0)
-
-    def at_points(self, values: Real) -> Real:
-        """Return the coefficients of 1, s, s**2, ... at many points at once.
-
-        Parameters
-        ----------
-        values : float array, shape (S, P)
-            Positive values of the symbols. [normalised]
-
-        Returns
-        -------
-        float array, shape (S, K)
-            Ascending powers of s, K - 1 being the `degree`.
-
-        Notes
-        -----
-        Products are sums of logarithms, one matrix product for all points: a few hundred
-        roundings from exact where `coefficients` is a few.
-        """
-        exponents, by_power = self._exponents
-        return np.asarray(np.exp(np.log(values) @ exponents) @ by_power)
-
-    @cached_property
-    def _exponents(self) -> tuple[Real, Real]:
-        """The members as a matrix of 0 and 1, (P, T), and the coefficients at the place of each
-        term's power of s, (T, K)."""
-        coefficients, members, powers = self._table
-        by_power = np.zeros((len(powers), self.degree + 1))
-        by_power[np.arange(len(powers)), powers] = coefficients
-        return np.ascontiguousarray(members.T, dtype=float), by_power
-
-    @cached_property
-    def degree(self) -> int:
-        """The highest power of s; 0 where the polynomial is zero."""
-        return int(self._table[2].max()) if self.terms else 0
 
     @cached_property
     def dynamic(self) -> int:

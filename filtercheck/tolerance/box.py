@@ -60,10 +60,10 @@ class Box:
         """The point in the middle, shape (P + T,)."""
         return (self.low + self.high) / 2.0
 
-    def fixed(self, symbols: int) -> Box:
-        """Return the box with the own values of the symbols of a mask exact, as nominal."""
+    def fixed(self, symbols: int, at: Real) -> Box:
+        """Return the box with the own values of the symbols of a mask exact, as at a point."""
         chosen = np.array([bool(symbols >> i & 1) for i in range(len(self.own_low))], dtype=bool)
-        own = self.nominal[: len(self.own_low)]
+        own = at[: len(self.own_low)]
         return replace(
             self,
             own_low=np.where(chosen, own, self.own_low),
@@ -84,6 +84,15 @@ class Box:
         for k, row in enumerate(self.members):
             values = np.where(row, values * points[:, count + k, None], values)
         return values
+
+    def ends(self, point: Real) -> Real:
+        """Return the point with each free coordinate at its lower end, then with each at its
+        upper end; shape (2 F, P + T)."""
+        count = len(self.free)
+        points = np.tile(point, (2 * count, 1))
+        points[np.arange(count), self.free] = self.low[self.free]
+        points[count + np.arange(count), self.free] = self.high[self.free]
+        return points
 
     def halves(self, coordinate: int) -> Iterator[Box]:
         """Yield the two halves of the box along one coordinate."""

@@ -36,27 +36,24 @@ from math import comb, inf
 import numpy as np
 
 from filtercheck.network.ratio import Complex, Real
-from filtercheck.tolerance.corners import Nodes
+from filtercheck.tolerance.corners import ROUNDING, Nodes
+from filtercheck.tolerance.faces import keep, weighted
 from filtercheck.tolerance.segment import Segment, times_linear
 from filtercheck.tolerance.stage import Stage
-
-# What is kept free for rounding, as a part of the sum of the terms' sizes: some hundred times
-# what the few hundred operations on the way to a coefficient can lose.
-ROUNDING = 1e-12
 
 
 @dataclass(frozen=True)
 class Form:
-    """A polynomial's coefficients on a segment at every node, and what rounding may change."""
+    """A polynomial's coefficients on a segment at every node, and how wrong they may be."""
 
     at_nodes: Complex  # (2^n, C, J)
-    rounding: Real  # (J,)
+    doubt: Real  # (J,)
 
 
 def form(nodes: Nodes, segment: Segment, degree: int) -> Form:
     """Return a polynomial at the nodes as forms of a degree on a segment."""
     powers = segment.powers(degree)[: nodes.values.shape[-1]]
-    return Form(nodes.values @ powers, ROUNDING * (nodes.size @ np.abs(powers)))
+    return Form(nodes.values @ powers, nodes.doubt @ np.abs(powers))
 
 
 @dataclass(frozen=True)
@@ -70,20 +67,49 @@ class Sides:
         return "denominators" if self.above == "numerators" else "numerators"
 
 
-def ratio(stage: Stage, sides: Sides, segment: Segment, g: tuple[complex, complex]) -> float:
-    """Return the smallest c of the theorem, or infinity where there is none."""
+def ratio(
+    stage: Stage, sides: Sides, segment: Segment, g: tuple[complex, complex], enough: float
+) -> float:
+    """Return the smallest c of the theorem, or infinity where there is none.
+
+    For a stage of more free values than can be listed, return `enough` or infinity.
+    """
+    if stage.is_large:
+        return enough if _kept(stage, sides, segment, g, enough) else inf
     a = form(getattr(stage, sides.above), segment, stage.degree)
     b = form(getattr(stage, sides.below), segment, stage.degree)
     if segment.is_point:
-        size = np.abs(a.at_nodes) + a.rounding
-        return _largest(size, np.real(g[0] * b.at_nodes) - abs(g[0]) * b.rounding)
-    left: Real = np.abs(times_linear(a.at_nodes, 1.0, 1.0)) + _spread(a.rounding, (1.0, 1.0))
-    right = np.real(times_linear(b.at_nodes, *g)) - _spread(b.rounding, g)
+        size = np.abs(a.at_nodes) + a.doubt
+        return _largest(size, np.real(g[0] * b.at_nodes) - abs(g[0]) * b.doubt)
+    left: Real = np.abs(times_linear(a.at_nodes, 1.0, 1.0)) + _spread(a.doubt, (1.0, 1.0))
+    right = np.real(times_linear(b.at_nodes, *g)) - _spread(b.doubt, g)
     return _largest(left, right)
 
 
-def _spread(rounding: Real, g: tuple[complex, complex]) -> Real:
-    return np.real(times_linear(rounding.astype(complex), abs(g[0]), abs(g[1])))
+def _kept(
+    stage: Stage, sides: Sides, segment: Segment, g: tuple[complex, complex], c: float
+) -> bool:
+    """Whether the theorem holds for one c."""
+    a, b = stage.named(sides.above), stage.named(sides.below)
+    powers = segment.powers(stage.degree)
+    forms = [powers[: of.degree + 1] for of in (a, b)]
+    sizes = [of.size(stage.box.high) @ np.abs(f) for of, f in zip((a, b), forms, strict=True)]
+    if segment.is_point:
+        left, right = forms[0], c * g[0] * forms[1]
+        slack: Real = sizes[0] + c * abs(g[0]) * sizes[1]
+    else:
+        left, right = times_linear(forms[0], 1.0, 1.0), c * times_linear(forms[1], *g)
+        slack = _spread(sizes[0], (1.0, 1.0)) + c * _spread(sizes[1], g)
+    return keep(
+        weighted(a, stage.box, stage.degrees, left),
+        weighted(b, stage.box, stage.degrees, right),
+        stage.box,
+        ROUNDING * np.tile(slack, stage.common_nodes),
+    )
+
+
+def _spread(doubt: Real, g: tuple[complex, complex]) -> Real:
+    return np.real(times_linear(doubt.astype(complex), abs(g[0]), abs(g[1])))
 
 
 def _largest(left: Real, right: Real) -> float:
@@ -171,7 +197,7 @@ def _product(one: Form, other: Form, stage: Stage) -> tuple[Complex, Real]:
     for bit in range(len(stage.box.own_free)):
         loss += 0.5 * np.outer(_difference(one, bit), _difference(other, bit))
     tops = [np.abs(f.at_nodes).max(axis=(0, 1)) for f in (one, other)]
-    loss += np.outer(one.rounding, tops[1] + other.rounding) + np.outer(tops[0], other.rounding)
+    loss += np.outer(one.doubt, tops[1] + other.doubt) + np.outer(tops[0], other.doubt)
     return out, loss
 
 

@@ -37,6 +37,11 @@ class Chain:
         on frequency cancels, and values that are in nothing else do not matter."""
         return Chain(tuple(_reduced(stage) for stage in self.stages), self.unit)
 
+    @cached_property
+    def lightened(self) -> Chain:
+        """The same with what hardly matters taken as exact."""
+        return Chain(tuple(stage.lightened for stage in self.stages), self.unit)
+
     @property
     def nominal(self) -> Board:
         return tuple(stage.box.nominal for stage in self.stages)
@@ -87,4 +92,4 @@ class Chain:
 def _reduced(stage: Stage) -> Stage:
     numerator, denominator = stage.numerator.without_common(), stage.denominator.without_common()
     gone = ~(numerator.members | denominator.members)
-    return Stage(numerator, denominator, stage.box.fixed(gone))
+    return Stage(numerator, denominator, stage.box.fixed(gone, stage.box.nominal))

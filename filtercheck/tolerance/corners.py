@@ -1,11 +1,11 @@
-"""The network functions at all corners of a box, and at what stands between for common factors.
+"""A polynomial at all corners of a box, and at what stands between for common factors.
 
-A polynomial is affine in every own value. It is kept as a table of its terms, from which one
-symbol after the other is folded out: where a term without the symbol is a(...) and the term
-with it b(...), the new terms are a + low b and a + high b. The table shrinks as the arrays
-double, so that all 2^n corners cost little more than the last fold.
+A polynomial is affine in every own value. One value after the other is folded out of its terms:
+where those without the value make a(...) and those with it b(...), the new ones are a + low b
+and a + high b. The terms shrink as the arrays double, so that all 2^n corners cost little more
+than the last fold.
 
-A common factor u enters a term as often as symbols that share it do; after the fold the
+A common factor u enters a term as often as values that share it do; after the fold the
 polynomial has a degree m in u, and is turned into its m + 1 Bernstein coefficients over the
 interval of u. Own values and common factors together so give the Bernstein coefficients of the
 polynomial over the whole box: `nodes`. What is linear and holds for every node holds in the box.
@@ -13,15 +13,20 @@ polynomial over the whole box: `nodes`. What is linear and holds for every node 
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from itertools import product
 
 import numpy as np
 
-from filtercheck.network.polynomial import Polynomial, Real
+from filtercheck.network.ratio import Real
 from filtercheck.tolerance.box import Box, Common
+from filtercheck.tolerance.terms import Terms
 
-Key = tuple[int, int, tuple[int, ...]]  # free symbols left, power of s, powers of common factors
+# What is kept free for rounding, as a part of the sum of the terms' sizes: some hundred times
+# what the few hundred operations on the way to a coefficient can lose.
+ROUNDING = 1e-12
+
+Key = tuple[tuple[int, ...], int, tuple[int, ...]]  # own values left, power of s, of factors
 Table = dict[Key, Real]
 
 
@@ -30,11 +35,11 @@ class Nodes:
     """Bernstein coefficients of one polynomial over a box, and a bound of its terms' size."""
 
     values: Real  # (2^n, C, d + 1), ascending powers of s; bit k of the first index is corner k
-    size: Real  # (d + 1,), the largest sum of |terms|, from which rounding errors are judged
+    doubt: Real  # (d + 1,), by how much a coefficient may be wrong
 
 
-def nodes(polynomial: Polynomial, box: Box, degrees: tuple[int, ...]) -> Nodes:
-    """Return a polynomial at all nodes of a box.
+def nodes(of: Terms, box: Box, degrees: tuple[int, ...], doubt: Real) -> Nodes:
+    """Return a polynomial at all nodes of a box; `doubt` is what is known to be left out.
 
     Parameters
     ----------
@@ -42,29 +47,31 @@ def nodes(polynomial: Polynomial, box: Box, degrees: tuple[int, ...]) -> Nodes:
         To what degree in each common factor it is written, so that numerator and denominator
         have the same nodes; not below its own.
     """
-    table = _fixed(polynomial, box)
-    for index in box.own_free:
-        table = _folded(table, 1 << index, float(box.own_low[index]), float(box.own_high[index]))
-    corners = 2 ** len(box.own_free)
-    dense = np.zeros((corners, *(m + 1 for m in degrees), polynomial.degree + 1))
+    own = box.own_free
+    table = _table(of, box)
+    for index in own:
+        table = _folded(table, float(box.own_low[index]), float(box.own_high[index]))
+    dense = np.zeros((2 ** len(own), *(m + 1 for m in degrees), of.degree + 1))
     for (_, power, exponents), values in table.items():
         place: tuple[slice | int, ...] = (slice(None), *exponents, power)
         dense[place] += values
     for axis, (common, degree) in enumerate(zip(box.commons, degrees, strict=True), start=1):
         dense = np.moveaxis(
-            np.tensordot(dense, _bernstein(common, degree), axes=(axis, 0)), -1, axis
+            np.tensordot(dense, bernstein(common, degree), axes=(axis, 0)), -1, axis
         )
-    flat = dense.reshape(corners, -1, polynomial.degree + 1)
-    return Nodes(flat, _size(polynomial, box))
+    doubt = doubt + ROUNDING * of.size(box.high)
+    return Nodes(dense.reshape(2 ** len(own), -1, of.degree + 1), doubt)
 
 
-def common_degrees(polynomials: tuple[Polynomial, ...], box: Box) -> tuple[int, ...]:
+def common_degrees(polynomials: tuple[Terms, ...], box: Box) -> tuple[int, ...]:
     """Return the degree of the polynomials in each common factor, the larger one of them."""
-    terms = [mask for polynomial in polynomials for mask in polynomial.terms]
-    return tuple(
-        max(((mask & common.mask).bit_count() for mask in terms), default=0)
-        for common in box.commons
-    )
+    degrees = [0] * len(box.commons)
+    for column, coordinate in enumerate(box.free):
+        k = int(coordinate) - len(box.own_low)
+        if k >= 0:
+            highest = (of.exponents[:, column].max(initial=0.0) for of in polynomials)
+            degrees[k] = int(max(highest))
+    return tuple(degrees)
 
 
 def true_corners(degrees: tuple[int, ...]) -> list[int]:
@@ -74,33 +81,32 @@ def true_corners(degrees: tuple[int, ...]) -> list[int]:
     return [int(np.ravel_multi_index(one, shape)) if shape else 0 for one in product(*ends)]
 
 
-def _fixed(polynomial: Polynomial, box: Box) -> Table:
-    """Return the terms with the exact symbols multiplied out."""
-    exact = [i for i in range(len(box.own_low)) if box.own_low[i] == box.own_high[i]]
-    left = sum(1 << i for i in box.own_free)
+def _table(of: Terms, box: Box) -> Table:
+    """Return the weights by what is in each term; exponents of exact factors are 0."""
+    own, count = len(box.own_free), len(box.own_low)
+    varying = [int(coordinate) - count for coordinate in box.free[own:]]
     table: Table = {}
-    for mask, coefficient in polynomial.terms.items():
-        value = float(coefficient)
-        for i in exact:
-            if mask >> i & 1:
-                value *= float(box.own_low[i])
-        exponents = tuple((mask & common.mask).bit_count() for common in box.commons)
-        key = (mask & left, polynomial.power(mask), exponents)
-        table[key] = table.get(key, np.zeros(1)) + value
+    for row, power, weight in zip(of.exponents.astype(int), of.powers, of.weights, strict=True):
+        exponents = [0] * len(box.commons)
+        for k, exponent in zip(varying, row[own:], strict=True):
+            exponents[k] = int(exponent)
+        key = (tuple(int(e) for e in row[:own]), int(power), tuple(exponents))
+        table[key] = np.array([weight])
     return table
 
 
-def _folded(table: Table, bit: int, low: float, high: float) -> Table:
+def _folded(table: Table, low: float, high: float) -> Table:
+    """Fold the first own value out."""
     without: Table = {}
-    for (mask, power, exponents), values in table.items():
-        key = (mask & ~bit, power, exponents)
-        ends = (low, high) if mask & bit else (1.0, 1.0)
+    for ((first, *others), power, exponents), values in table.items():
+        key = (tuple(others), power, exponents)
+        ends = (low, high) if first else (1.0, 1.0)
         grown = np.concatenate([values * ends[0], values * ends[1]])
         without[key] = without[key] + grown if key in without else grown
     return without
 
 
-def _bernstein(common: Common, degree: int) -> Real:
+def bernstein(common: Common, degree: int) -> Real:
     """Return the Bernstein coefficients over the interval of u of 1, u, u^2, ... as rows."""
     binomial = np.ones(1)
     for _ in range(degree):
@@ -112,9 +118,3 @@ def _bernstein(common: Common, degree: int) -> Real:
             row = np.convolve(row, factor)
         rows.append(row / binomial)
     return np.array(rows)
-
-
-def _size(polynomial: Polynomial, box: Box) -> Real:
-    """Return the sum of the terms' sizes at the highest values, for each power of s."""
-    absolute = replace(polynomial, terms={m: abs(c) for m, c in polynomial.terms.items()})
-    return np.asarray(absolute.at_points(box.symbol_values(box.high[None, :]))[0])

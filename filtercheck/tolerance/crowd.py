@@ -53,9 +53,7 @@ def power(chain: Chain, boards: Board, omega: Real) -> Real:
     """Return |H|^2 of boards at frequencies, shape (S, F); 0 and infinity are allowed."""
     total: Real = np.ones(1)
     for stage, points in zip(chain.stages, boards, strict=True):
-        values = stage.box.symbol_values(points)
-        top = _squared(stage.numerator.at_points(values), omega, stage.degree)
-        bottom = _squared(stage.denominator.at_points(values), omega, stage.degree)
+        top, bottom = (_squared(one, omega, stage.degree) for one in stage.at(points))
         with np.errstate(divide="ignore", invalid="ignore"):
             np.divide(top, bottom, out=bottom)
             total = total * bottom

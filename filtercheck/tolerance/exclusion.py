@@ -16,12 +16,15 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass
-from math import cos, inf, pi, sin, tan
+from itertools import pairwise
+from math import cos, inf, pi, sin, sqrt, tan
 
 import numpy as np
 
 from filtercheck.network.ratio import Complex, Real
-from filtercheck.tolerance.certificate import ROUNDING
+from filtercheck.tolerance.corners import ROUNDING
+from filtercheck.tolerance.faces import keep, weighted
+from filtercheck.tolerance.poles import poles
 from filtercheck.tolerance.segment import Segment, powers, times_linear
 from filtercheck.tolerance.stage import Stage
 
@@ -71,6 +74,20 @@ class Doubt:
     at: complex
 
 
+def doubt_on_ray(
+    stage: Stage, angle: float, budget: int, probe: Callable[[Stage], bool] = lambda _: False
+) -> Doubt | None:
+    """Return the same as `doubt` for all points at one angle; pi/2 is the imaginary axis."""
+    sizes = np.sort(np.abs(poles(stage, stage.box.nominal[None, :])[0]))
+    # Cut between poles that lie far apart, the axis is proved with fewer pieces.
+    cuts = [sqrt(a * b) for a, b in pairwise(sizes) if b > 9.0 * a > 0.0]
+    for low, high in pairwise([0.0, *cuts, inf]):
+        found = doubt(stage, ray(Segment(low, high), angle), budget, probe)
+        if found is not None:
+            return found
+    return None
+
+
 def doubt(
     stage: Stage, path: Path, budget: int, probe: Callable[[Stage], bool] = lambda _: False
 ) -> Doubt | None:
@@ -83,10 +100,16 @@ def doubt(
     probe : callable
         Asked about each part of the box before it is divided; true ends the attempt there.
     """
+    if stage.is_large and not _doubt(stage.lightened, path, budget, probe):
+        return None
+    return _doubt(stage, path, budget, probe)
+
+
+def _doubt(stage: Stage, path: Path, budget: int, probe: Callable[[Stage], bool]) -> Doubt | None:
     left, work = [(stage, path)], 0
     while left:
         part, stretch = left.pop()
-        work += part.denominators.values.size
+        work += part.cost
         if _excluded(part, stretch):
             continue
         middle = stretch.halves()[0].at(1)
@@ -108,19 +131,36 @@ def _place(point: Path) -> complex:
 
 
 def _excluded(stage: Stage, path: Path) -> bool:
+    if stage.is_large:
+        return _excluded_by_faces(stage, path)
     nodes = stage.denominators
-    degree = stage.denominator.degree
+    degree = stage.terms[1].degree
     ends = [nodes.values @ powers(path.at(i).x, path.at(i).y, degree).sum(axis=1) for i in (0, 1)]
     g = tuple(_direction(values) for values in ends)
     if path.x[0] == path.x[1] and path.y[0] == path.y[1]:
-        size = nodes.size @ np.abs(powers(path.x, path.y, degree)).sum(axis=1)
-        return bool((np.real(g[0] * ends[0]) > ROUNDING * size).all())
+        size = nodes.doubt @ np.abs(powers(path.x, path.y, degree)).sum(axis=1)
+        return bool((np.real(g[0] * ends[0]) > abs(g[0]) * size).all())
     forms = powers(path.x, path.y, degree)
     slack = np.real(
-        times_linear((nodes.size @ np.abs(forms)).astype(complex), abs(g[0]), abs(g[1]))
+        times_linear((nodes.doubt @ np.abs(forms)).astype(complex), abs(g[0]), abs(g[1]))
     )
     turned = np.real(times_linear(nodes.values @ forms, g[0], g[1]))
-    return bool((turned > ROUNDING * slack).all())
+    return bool((turned > slack).all())
+
+
+def _excluded_by_faces(stage: Stage, path: Path) -> bool:
+    """The same where there are too many corners to list; some boards say the direction."""
+    of, box = stage.terms[1], stage.box
+    boards = of.at(box.ends(box.centre))
+    forms = powers(path.x, path.y, of.degree)
+    g = [
+        _direction(boards @ powers(path.at(i).x, path.at(i).y, of.degree).sum(axis=1))
+        for i in (0, 1)
+    ]
+    sizes = (of.size(box.high) @ np.abs(forms)).astype(complex)
+    slack: Real = np.real(times_linear(sizes, abs(g[0]), abs(g[1])))
+    right = weighted(of, box, stage.degrees, times_linear(forms, g[0], g[1]))
+    return keep(None, right, box, ROUNDING * np.tile(slack, stage.common_nodes))
 
 
 def _direction(values: Complex) -> complex:
@@ -138,11 +178,7 @@ def _direction(values: Complex) -> complex:
 def _widest(stage: Stage, point: Path) -> int:
     """Return the coordinate along which the denominator changes most at a point."""
     box = stage.box
-    row = powers(point.x, point.y, stage.denominator.degree).sum(axis=1)
-    change: Real = np.zeros(len(box.free))
-    for k, coordinate in enumerate(box.free):
-        pair = np.tile(box.centre, (2, 1))
-        pair[0, coordinate], pair[1, coordinate] = box.low[coordinate], box.high[coordinate]
-        low, high = stage.denominator.at_points(box.symbol_values(pair)) @ row
-        change[k] = abs(high - low)
+    row = powers(point.x, point.y, stage.terms[1].degree).sum(axis=1)
+    low, high = np.split(stage.terms[1].at(box.ends(box.centre)) @ row, 2)
+    change = np.abs(high - low)
     return int(box.free[int(np.argmax(change))])

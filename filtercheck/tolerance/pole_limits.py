@@ -14,16 +14,15 @@ pole lies, the poles beyond it have sizes
 
 from __future__ import annotations
 
-from math import acos, inf, pi
+from math import acos, pi
 
 import numpy as np
 
 from filtercheck.network.ratio import Complex, Real
 from filtercheck.tolerance.chain import Board, Chain
-from filtercheck.tolerance.exclusion import Path, arc, doubt, ray
+from filtercheck.tolerance.exclusion import arc, doubt, doubt_on_ray
 from filtercheck.tolerance.limit import Poles
 from filtercheck.tolerance.poles import extreme_board, poles, qualities, sharpest_of
-from filtercheck.tolerance.segment import Segment
 
 # A ray that tells the sharpest poles from others, as a part of the lowest Q that they have.
 APART = 0.9
@@ -57,7 +56,7 @@ def proved(chain: Chain, claim: Poles, budget: int) -> bool:
     if claim.quantity == "Q":
         if claim.value <= 0.5:
             return claim.sense == "at least"  # no pole has a lower one
-        return _clear(chain, ray(Segment(0.0, inf), _angle(claim.value)), budget)
+        return _clear_ray(chain, _angle(claim.value), budget)
     least = Poles("Q", "at least", 0.0)
     board = extreme(chain, least)
     pairs = zip(chain.stages, board, strict=True)
@@ -66,8 +65,9 @@ def proved(chain: Chain, claim: Poles, budget: int) -> bool:
     if apart <= 0.5 or not _same_side(chain, claim, apart):
         return False
     angle = _angle(apart)
-    return _clear(chain, ray(Segment(0.0, inf), angle), budget) and _clear(
-        chain, arc(chain.omega(claim.value), pi / 2.0, angle), budget
+    path = arc(chain.omega(claim.value), pi / 2.0, angle)
+    return _clear_ray(chain, angle, budget) and all(
+        doubt(stage, path, budget) is None for stage in chain.stages
     )
 
 
@@ -75,8 +75,8 @@ def _angle(q: float) -> float:
     return acos(-1.0 / (2.0 * q))
 
 
-def _clear(chain: Chain, path: Path, budget: int) -> bool:
-    return all(doubt(stage, path, budget) is None for stage in chain.stages)
+def _clear_ray(chain: Chain, angle: float, budget: int) -> bool:
+    return all(doubt_on_ray(stage, angle, budget) is None for stage in chain.stages)
 
 
 def _same_side(chain: Chain, claim: Poles, apart: float) -> bool:

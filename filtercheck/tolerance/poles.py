@@ -18,7 +18,7 @@ def poles(stage: Stage, points: Real) -> Complex:
     Eigenvalues of companion matrices; the polynomials are scaled so that their outer
     coefficients are alike, which keeps poles some decades apart.
     """
-    return roots(stage.denominator.at_points(stage.box.symbol_values(points)))
+    return roots(stage.terms[1].at(points))
 
 
 def roots(coefficients: Real) -> Complex:

@@ -47,7 +47,15 @@ def prove(chain: Chain, limit: Limit, choices_hz: tuple[float, ...], budget: int
     budget : int
         How many numbers may be computed before the attempt ends.
     """
-    left = _pieces(chain if limit.reference is None else chain.relative, limit, choices_hz)
+    if limit.reference is None:
+        return _proof(_pieces(chain, limit, choices_hz), limit, budget)
+    light = _proof(_pieces(chain.relative.lightened, limit, choices_hz), limit, budget)
+    if light.challenge is not None or light.gap_db <= 0.0:
+        return light
+    return _proof(_pieces(chain.relative, limit, choices_hz), limit, budget)
+
+
+def _proof(left: list[Piece], limit: Limit, budget: int) -> Proof:
     work = 0
     while left and work <= budget:
         piece = left.pop()

@@ -11,6 +11,10 @@ from filtercheck.network.polynomial import Polynomial
 from filtercheck.network.ratio import Complex, Real
 from filtercheck.tolerance.box import Box
 from filtercheck.tolerance.corners import Nodes, common_degrees, nodes, true_corners
+from filtercheck.tolerance.terms import Terms, terms
+
+MINOR = 2e-5  # of the sum of the terms' sizes, what values taken as exact may do together
+MOST_LISTED = 14  # free values of a network whose corners are listed
 
 
 @dataclass(frozen=True, eq=False)
@@ -23,22 +27,69 @@ class Stage:
     numerator: Polynomial
     denominator: Polynomial
     box: Box
+    # By how much the coefficients of N and D may be wrong, where values were taken as exact.
+    doubts: tuple[Real, Real] = (np.zeros(1), np.zeros(1))
 
     def within(self, box: Box) -> Stage:
-        """Return the same network with a part of its box."""
-        return replace(self, box=box)
+        """Return the same network with a part of its box, in which the same values are free."""
+        part = replace(self, box=box)
+        part.__dict__["terms"] = self.terms
+        return part
+
+    @cached_property
+    def terms(self) -> tuple[Terms, Terms]:
+        """N and D over the free coordinates."""
+        return terms(self.numerator, self.box), terms(self.denominator, self.box)
+
+    def named(self, side: str) -> Terms:
+        """Return the terms of the "numerators" or of the "denominators"."""
+        return self.terms[0] if side == "numerators" else self.terms[1]
+
+    @property
+    def is_large(self) -> bool:
+        """Whether it has more free values than corners can be listed for."""
+        return len(self.box.own_free) > MOST_LISTED
+
+    @property
+    def cost(self) -> int:
+        """About how many numbers a trial computes."""
+        if self.is_large:
+            return 100 * sum(len(of.weights) for of in self.terms)
+        corners: int = (1 << len(self.box.own_free)) * self.common_nodes
+        return corners * sum(of.degree + 1 for of in self.terms)
+
+    @property
+    def common_nodes(self) -> int:
+        """How many Bernstein coefficients the common factors make."""
+        return int(np.prod([m + 1 for m in self.degrees], dtype=int))
+
+    def at(self, points: Real) -> tuple[Real, Real]:
+        """Return the coefficients of N and D, each (S, K), at boards of shape (S, P + T)."""
+        return self.terms[0].at(points), self.terms[1].at(points)
+
+    @cached_property
+    def lightened(self) -> Stage:
+        """Return the stage with own values that hardly matter taken as exact, in their middle;
+        what they can do is a doubt of the coefficients."""
+        minor = 0
+        for i in self.box.own_free:
+            if all(of.influence_part(self.box, minor | 1 << i) < MINOR for of in self.terms):
+                minor |= 1 << i
+        doubts = tuple(of.influence(self.box, minor) for of in self.terms)
+        box = self.box.fixed(minor, self.box.centre)
+        return Stage(self.numerator, self.denominator, box, (doubts[0], doubts[1]))
 
     @cached_property
     def degrees(self) -> tuple[int, ...]:
-        return common_degrees((self.numerator, self.denominator), self.box)
+        return common_degrees(self.terms, self.box)
 
     @cached_property
     def numerators(self) -> Nodes:
-        return nodes(self.numerator, self.box, self.degrees)
+        return nodes(self.terms[0], self.box, self.degrees, self.doubts[0])
 
     @cached_property
     def denominators(self) -> Nodes:
-        return nodes(self.denominator, self.box, self.degrees)
+        return nodes(self.terms[1], self.box, self.degrees, self.doubts[1])
 
     @cached_property
     def true_corners(self) -> list[int]:
@@ -59,29 +110,22 @@ class Stage:
 
     def responses(self, points: Real, omega: float) -> tuple[Complex, Complex]:
         """Return N and D of boards of the box at one frequency, each of shape (S,)."""
-        values = self.box.symbol_values(points)
-        return (
-            at_frequency(self.numerator.at_points(values), omega, self.degree),
-            at_frequency(self.denominator.at_points(values), omega, self.degree),
-        )
+        top, bottom = self.at(points)
+        return at_frequency(top, omega, self.degree), at_frequency(bottom, omega, self.degree)
 
     def changes(self, omega: float) -> Real:
         """Return how much N and D change along each free coordinate at one frequency, as a part
         of their size; shape (F,)."""
-        free, box = self.box.free, self.box
-        rows = np.arange(len(free))
-        points = np.tile(box.centre, (2 * len(free), 1))
-        points[rows, free], points[len(free) + rows, free] = box.low[free], box.high[free]
-        change = np.zeros(len(free))
-        for values in self.responses(points, omega):
-            low, high = values[: len(free)], values[len(free) :]
+        change = np.zeros(len(self.box.free))
+        for values in self.responses(self.box.ends(self.box.centre), omega):
+            low, high = np.split(values, 2)
             with np.errstate(divide="ignore", invalid="ignore"):
                 change += np.nan_to_num(np.abs(high - low) / (np.abs(high) + np.abs(low)))
         return change
 
     @property
     def degree(self) -> int:
-        return max(self.numerator.degree, self.denominator.degree)
+        return max(of.degree for of in self.terms)
 
 
 def at_frequency(coefficients: Real, omega: float, degree: int) -> Complex:

@@ -18,6 +18,8 @@ from filtercheck.tolerance.limit import DECIBEL, Limit
 from filtercheck.tolerance.segment import Segment, largest_product
 from filtercheck.tolerance.stage import Stage
 
+# Free values of a network whose corners are listed for a ratio of two frequencies.
+MOST_LISTED = 16
 # A worst board is beyond the limit when it is so by more than rounding.
 CLEAR_DB = 1e-9
 
@@ -57,15 +59,17 @@ class Trial:
                     return Attempt(-slack * DECIBEL, board)
                 worst[k, m] = board
                 shares[k, m] = [height + slack / len(heights) for height in heights]
-        total, work = log(self._bulge(shares)), 0
+        bulge = log(self._bulge(shares))
+        total, work = bulge, 0
+        enough = exp(-bulge / len(self.chain.stages)) * (1.0 - 1e-12)
         for index, stage in enumerate(self.chain.stages):
             g = {
                 (k, m): self._direction(stage, worst[k, m][index], shares[k, m][index], k, m)
                 for k, m in worst
             }
-            c = self._ratio(stage, g)
+            c = self._ratio(stage, g, enough)
             total += log(c) if 0.0 < c < inf else (inf if c else -inf)
-            work += stage.numerators.values.size * len(self.others)
+            work += stage.cost * len(self.others)
         return Attempt(total * DECIBEL, None, work)
 
     @property
@@ -84,10 +88,12 @@ class Trial:
         """Return what sign * ln|gain| may be."""
         return self.limit.excess_allowed_db(self.chain.freq_hz(omega)) / DECIBEL
 
-    def _ratio(self, stage: Stage, g: dict[tuple[int, int], complex]) -> float:
+    def _ratio(self, stage: Stage, g: dict[tuple[int, int], complex], enough: float) -> float:
         k, m = len(self.ends) - 1, len(self.others) - 1
         if self.reference is None:
-            return ratio(stage, self.sides, self.segment, (g[0, 0], g[k, 0]))
+            return ratio(stage, self.sides, self.segment, (g[0, 0], g[k, 0]), enough)
+        if len(stage.box.own_free) > MOST_LISTED:
+            return inf
         corners = ((g[0, 0], g[0, m]), (g[k, 0], g[k, m]))
         return relative_ratio(stage, self.sides, (self.segment, self.reference), corners)
 

@@ -38,8 +38,15 @@ class Variation:
 
     def chain(self, output: str) -> Chain:
         """Return the stages from the signal to an output."""
-        last, node = self.wiring.outputs[output]
-        return self._chain([*(group.drive for group in self.wiring.groups[:last]), node])
+        if output not in self._chains:
+            last, node = self.wiring.outputs[output]
+            ends = [*(group.drive for group in self.wiring.groups[:last]), node]
+            self._chains[output] = self._chain(ends)
+        return self._chains[output]
+
+    @cached_property
+    def _chains(self) -> dict[str, Chain]:
+        return {}
 
     @cached_property
     def whole(self) -> Chain:
@@ -52,7 +59,7 @@ class Variation:
             functions = network_functions(group.network)
             numerator, denominator = functions.numerators[node], functions.denominator
             unused = ~(numerator.members | denominator.members)
-            stages.append(Stage(numerator, denominator, box.fixed(unused)))
+            stages.append(Stage(numerator, denominator, box.fixed(unused, box.nominal)))
         return Chain(tuple(stages), self._omega0)
 
     def fitted(self, board: Board) -> dict[str, Part]:
