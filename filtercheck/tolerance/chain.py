@@ -9,6 +9,7 @@ from math import pi
 
 import numpy as np
 
+from filtercheck.network.curve import Curve
 from filtercheck.network.ratio import Ratio, Real
 from filtercheck.network.response import Response
 from filtercheck.tolerance.climb import Aim, best_corner, climb, heights
@@ -36,6 +37,23 @@ class Chain:
         """The same for ratios of one board's responses at two frequencies: what does not depend
         on frequency cancels, and values that are in nothing else do not matter."""
         return Chain(tuple(_reduced(stage) for stage in self.stages), self.unit)
+
+    @property
+    def is_lighter(self) -> bool:
+        """Whether `lightened` takes any value as exact that is not."""
+        pairs = zip(self.stages, self.lightened.stages, strict=True)
+        return any(len(a.box.free) > len(b.box.free) for a, b in pairs)
+
+    def peak_hz(self, band_hz: tuple[float, float]) -> float:
+        """Return where the board in the middle has its largest gain on a band."""
+        if band_hz not in self._peaks:
+            middle = tuple(stage.box.centre for stage in self.stages)
+            self._peaks[band_hz] = Curve(self.response(middle)).highest(band_hz).freq_hz
+        return self._peaks[band_hz]
+
+    @cached_property
+    def _peaks(self) -> dict[tuple[float, float], float]:
+        return {}
 
     @cached_property
     def lightened(self) -> Chain:
@@ -68,10 +86,25 @@ class Chain:
             for stage, point in zip(self.stages, board, strict=True)
         ]
 
+    def change(self, low: float, high: float) -> float:
+        """Return how much N and D of the board in the middle change between two frequencies, as
+        a part of their size."""
+        total = 0.0
+        for stage in self.stages:
+            middle = stage.box.centre[None, :]
+            for one, other in zip(
+                stage.responses(middle, low), stage.responses(middle, high), strict=True
+            ):
+                size = float(abs(one[0]) + abs(other[0]))
+                total += float(abs(other[0] - one[0])) / size if size else 0.0
+        return total
+
     def halves(self, omega: float) -> Iterator[Chain]:
         """Yield the chain with either half of a box, along the coordinate that matters most at a
-        frequency: that along which N and D change most."""
+        frequency: that along which N and D change most; nothing where all is exact."""
         changes = [stage.changes(omega) for stage in self.stages]
+        if not any(len(change) for change in changes):
+            return
         k = max(range(len(changes)), key=lambda i: float(changes[i].max(initial=0.0)))
         stage = self.stages[k]
         for box in stage.box.halves(int(stage.box.free[int(np.argmax(changes[k]))])):

@@ -19,7 +19,7 @@ from filtercheck.network.ratio import Real
 from filtercheck.tolerance.chain import Board, Chain
 from filtercheck.tolerance.limit import DECIBEL, Limit
 
-POINTS = 200  # of a grid
+POINTS = 64  # of a grid, about
 FINE = 4000  # of the grid that tells where responses bend
 # Of the height of a parabola over its middle point, what it may be wrong by.
 DOUBTFUL = 0.5
@@ -43,10 +43,11 @@ def grid(chain: Chain, boards: Board, band: tuple[float, float], span: tuple[flo
         return np.unique([*band])
     fine = np.geomspace(low, high, FINE)
     bend = np.abs(np.diff(np.log(power(chain, boards, fine)), n=2, axis=1)).max(axis=0)
-    density = np.sqrt(bend) + 0.05 * np.sqrt(bend.max()) + 1e-12
+    density = np.sqrt(np.pad(bend, 1, mode="edge"))
+    density += 0.05 * density.max() + 1e-12
     steps = np.concatenate([[0.0], np.cumsum((density[:-1] + density[1:]) / 2.0)])
-    places = np.interp(np.linspace(0.0, steps[-1], POINTS), steps, np.log(fine[1:-1]))
-    return np.unique([band[0], low, *np.exp(places), high, band[1]])
+    inner = np.interp(np.linspace(0.0, steps[-1], POINTS)[1:-1], steps, np.log(fine))
+    return np.unique([band[0], low, *np.exp(inner), high, band[1]])
 
 
 def power(chain: Chain, boards: Board, omega: Real) -> Real:
@@ -121,14 +122,14 @@ class Screen:
             gain = powers(self.band)
             level = gain * self._factor if sign > 0 else self._factor / gain
             if reference is None:
-                return Standing(*_peak(level))
+                return Standing(*_peak(level, self.band))
             gain = powers(self.reference)
             if reference.side:
                 level = np.where(self._beside(gain), level, 0.0)
-                return _sum(_peak(level), _peak(gain), -sign)
+                return _sum(_peak(level, self.band), _peak(gain, self.reference), -sign)
             if reference.every:
-                return _sum(_peak(level), _peak(gain**-sign), 1)
-            return _sum(_peak(level), _peak(gain**sign), -1)
+                return _sum(_peak(level, self.band), _peak(gain**-sign, self.reference), 1)
+            return _sum(_peak(level, self.band), _peak(gain**sign, self.reference), -1)
 
     @cached_property
     def _factor(self) -> Real:
@@ -147,19 +148,36 @@ def _sum(one: tuple[Real, Real], other: tuple[Real, Real], sign: int) -> Standin
     return Standing(one[0] + sign * other[0], one[1] + other[1])
 
 
-def _peak(level: Real) -> tuple[Real, Real]:
+def _peak(level: Real, omega: Real) -> tuple[Real, Real]:
     """Return half the logarithm of the largest value between the points of a grid, as the
-    parabola about the largest point has it, and the doubt that is left."""
+    parabola about the largest point has it, and the doubt that is left.
+
+    The parabola is one in w^2/(w^2 + w0^2): the logarithm of a power is analytic in w^2, at 0
+    and with its inverse at infinity.
+    """
     rows, last, at = np.arange(len(level)), level.shape[1] - 1, np.argmax(level, axis=1)
-    middle = np.clip(at, 1, max(last - 1, 0))
     top = np.log(level[rows, at]) / 2.0
     if last < 2:
         return top, np.full(len(level), LEAST_DOUBT)
+    middle = np.clip(at, 1, last - 1)
     before, here, after = (np.log(level[rows, middle + k]) / 2.0 for k in (-1, 0, 1))
-    bend = 2.0 * here - before - after
+    place = _compact(tuple(omega))
+    left, right = place[middle] - place[middle - 1], place[middle + 1] - place[middle]
     with np.errstate(divide="ignore", invalid="ignore"):
-        place = np.clip((after - before) / (2.0 * bend), -1.0, 1.0)
-        rise = np.where(bend > 0.0, (after - before) * place / 2.0 - bend * place**2 / 2.0, 0.0)
+        falling, rising = (here - before) / left, (after - here) / right
+        bend = (rising - falling) / (left + right)
+        slope = (falling * right + rising * left) / (left + right)
+        step = np.clip(-slope / (2.0 * bend), -left, right)
+        rise = np.where(bend < 0.0, (slope + bend * step) * step, 0.0)
     peak = np.maximum(top, np.where(np.isfinite(rise), here + rise, top))
-    doubt = DOUBTFUL * np.abs(peak - top) + np.abs(np.nan_to_num(bend)) * 0.02 + LEAST_DOUBT
-    return peak, doubt
+    curved = np.abs(np.where(np.isfinite(bend), bend, 0.0)) * np.minimum(left, right) ** 2
+    return peak, DOUBTFUL * np.abs(peak - top) + 0.02 * curved + LEAST_DOUBT
+
+
+@lru_cache(maxsize=256)
+def _compact(omega: tuple[float, ...]) -> Real:
+    """Return w^2/(w^2 + w0^2), w0 being the geometric mean of the inner frequencies."""
+    w = np.array(omega)
+    centre = float(np.sqrt(w[1] * w[-2]))
+    with np.errstate(invalid="ignore"):
+        return np.where(np.isfinite(w), w**2 / (w**2 + centre**2), 1.0)

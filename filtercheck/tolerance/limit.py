@@ -21,6 +21,11 @@ class Reference:
     every: bool  # whether the limit holds from each of them, or it is enough to hold from one
     side: str = ""  # "above" or "below" where it holds on that side of the reference only
 
+    @property
+    def is_choice(self) -> bool:
+        """Whether there are several references of which one is enough."""
+        return not self.every and self.band_hz[0] < self.band_hz[1]
+
 
 @dataclass(frozen=True)
 class Limit:

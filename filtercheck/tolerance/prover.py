@@ -10,14 +10,17 @@ input gives the same outcome.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from itertools import pairwise
-from math import inf, isinf, log
+from math import inf
 
 from filtercheck.tolerance.chain import Board, Chain
 from filtercheck.tolerance.limit import Limit
 from filtercheck.tolerance.segment import Segment
 from filtercheck.tolerance.trial import Attempt, Trial
+
+# The band is halved first, unless it has less than this part of what the box adds to a gap.
+BAND_FIRST = 0.01
 
 
 @dataclass(frozen=True)
@@ -30,11 +33,13 @@ class Proof:
 
 @dataclass(frozen=True, eq=False)
 class Piece:
-    """A part of the boxes and of the band, and of the band of the reference."""
+    """A part of the boxes and of the band, and of the band of a reference that every gain of
+    counts; where one of them is enough, it is chosen for each part of the boxes."""
 
     chain: Chain
     segment: Segment
-    references: tuple[Segment | None, ...]  # to be proved with one of them; None is no reference
+    reference: Segment | None = None
+    gap_db: float = inf  # what was left to prove of the piece that this is a half of
 
 
 def prove(chain: Chain, limit: Limit, choices_hz: tuple[float, ...], budget: int) -> Proof:
@@ -43,33 +48,37 @@ def prove(chain: Chain, limit: Limit, choices_hz: tuple[float, ...], budget: int
     Parameters
     ----------
     choices_hz : tuple of float
-        Frequencies to measure from, for a limit that need hold from one reference only. [Hz]
+        Frequencies to measure from, for a limit that need hold from one reference only; besides
+        them the one where the board in the middle of a part has its largest gain. [Hz]
     budget : int
         How many numbers may be computed before the attempt ends.
     """
     if limit.reference is None:
-        return _proof(_pieces(chain, limit, choices_hz), limit, budget)
-    light = _proof(_pieces(chain.relative.lightened, limit, choices_hz), limit, budget)
-    if light.challenge is not None or light.gap_db <= 0.0:
+        return _proof(chain, limit, choices_hz, budget)
+    light = _proof(chain.relative.lightened, limit, choices_hz, budget)
+    if light.challenge is not None or light.gap_db <= 0.0 or not chain.relative.is_lighter:
         return light
-    return _proof(_pieces(chain.relative, limit, choices_hz), limit, budget)
+    return _proof(chain.relative, limit, choices_hz, budget)
 
 
-def _proof(left: list[Piece], limit: Limit, budget: int) -> Proof:
-    work = 0
+def _proof(chain: Chain, limit: Limit, choices_hz: tuple[float, ...], budget: int) -> Proof:
+    left, work = _pieces(chain, limit), 0
     while left and work <= budget:
         piece = left.pop()
-        attempt = _attempt(piece, limit)
+        attempt = _attempt(piece, limit, choices_hz)
         work += attempt.work
         if attempt.challenge is not None:
             return Proof(attempt.gap_db, attempt.challenge)
         if attempt.gap_db > 0.0:
-            left.extend(reversed(_halves(piece, limit)))
-    gaps = [_attempt(piece, limit).gap_db for piece in left]
-    return Proof(max(gaps, default=0.0), None)
+            gap_db = min(piece.gap_db, attempt.gap_db)
+            halves = _halves(piece, attempt, limit, choices_hz)
+            left.extend(replace(half, gap_db=gap_db) for half in reversed(halves))
+            if not halves:
+                return Proof(gap_db, None)
+    return Proof(max((piece.gap_db for piece in left), default=0.0), None)
 
 
-def _pieces(chain: Chain, limit: Limit, choices_hz: tuple[float, ...]) -> list[Piece]:
+def _pieces(chain: Chain, limit: Limit) -> list[Piece]:
     """Return the pieces to begin with: the band, cut where the limit has a corner."""
 
     def segment(low_hz: float, high_hz: float) -> Segment:
@@ -78,71 +87,86 @@ def _pieces(chain: Chain, limit: Limit, choices_hz: tuple[float, ...]) -> list[P
     low, high = limit.band_hz
     cuts = [low, *(f for f, _ in limit.level_db if low < f < high), high]
     segments = [segment(*pair) for pair in (pairwise(cuts) if low < high else [(low, high)])]
-    references: tuple[Segment | None, ...] = (None,)
-    if limit.reference is not None:
-        references = (segment(*limit.reference.band_hz),)
-        if not limit.reference.every and not (references[0] and references[0].is_point):
-            references = tuple(segment(freq, freq) for freq in choices_hz)
-    return [Piece(chain, one, references) for one in reversed(segments)]
+    over = limit.reference
+    reference = segment(*over.band_hz) if over and not over.is_choice else None
+    return [Piece(chain, one, reference) for one in reversed(segments)]
 
 
-def _attempt(piece: Piece, limit: Limit) -> Attempt:
-    """Try one piece, from each reference that it may be proved with."""
-    best = Attempt(inf)
-    for reference in piece.references:
-        if _aside(piece.segment, reference, limit):
+def _attempt(piece: Piece, limit: Limit, choices_hz: tuple[float, ...]) -> Attempt:
+    """Try one piece, from each reference that it may be proved from."""
+    if limit.reference is None or not limit.reference.is_choice:
+        if _aside(piece, limit):
             return Attempt(0.0)
-        one = Trial(piece.chain, piece.segment, reference, limit).attempt()
-        if one.gap_db <= 0.0:
-            return one
-        best = min(best, one, key=lambda attempt: attempt.gap_db)
-    if len(piece.references) > 1:
+        return Trial(piece.chain, piece.segment, piece.reference, limit).attempt()
+    best = Attempt(inf)
+    for freq_hz in (piece.chain.peak_hz(limit.reference.band_hz), *choices_hz):
+        omega = piece.chain.omega(freq_hz)
+        one = Trial(piece.chain, piece.segment, Segment(omega, omega), limit).attempt()
         # A board beyond the limit from one reference may keep to it from another.
-        return Attempt(best.gap_db, None, best.work)
+        best = Attempt(
+            min(best.gap_db, one.gap_db),
+            None,
+            best.work + one.work,
+            max(best.slack_db, one.slack_db),
+        )
+        if best.gap_db <= 0.0:
+            break
     return best
 
 
-def _aside(segment: Segment, reference: Segment | None, limit: Limit) -> bool:
+def _aside(piece: Piece, limit: Limit) -> bool:
     """Whether a limit says nothing here: it holds on one side of its reference only."""
-    if reference is None or limit.reference is None:
+    if piece.reference is None or limit.reference is None:
         return False
     if limit.reference.side == "above":
-        return segment.high <= reference.low
-    return limit.reference.side == "below" and segment.low >= reference.high
+        return piece.segment.high <= piece.reference.low
+    return limit.reference.side == "below" and piece.segment.low >= piece.reference.high
 
 
-def _halves(piece: Piece, limit: Limit) -> list[Piece]:
-    """Halve a piece: the box where a single frequency cannot be proved, else the band."""
+def _halves(
+    piece: Piece, attempt: Attempt, limit: Limit, choices: tuple[float, ...]
+) -> list[Piece]:
+    """Halve a piece where more of its gap comes from: the box, or the band.
+
+    No gap is less than minus the slack of the worst boards. What the middle frequency alone is
+    above that comes from the box, what the whole piece is above the middle from the band.
+    """
     middle = _point(piece.segment)
-    references = tuple(_point(one) if one else None for one in piece.references)
-    if middle == piece.segment and references == piece.references:
+    reference = _point(piece.reference) if piece.reference else None
+    if middle == piece.segment and reference == piece.reference:
         return _box_halves(piece)
-    single = _attempt(Piece(piece.chain, middle, references), limit)
-    if single.challenge is None and single.gap_db > 0.0:
-        return _box_halves(piece)
-    return _band_halves(piece)
+    single = _attempt(Piece(piece.chain, middle, reference), limit, choices)
+    from_box = single.gap_db + single.slack_db
+    if (
+        single.challenge is None
+        and from_box > 0.0
+        and not attempt.gap_db - single.gap_db > from_box
+    ):
+        return _box_halves(piece) or _band_halves(piece)
+    return _band_halves(piece) or _box_halves(piece)
 
 
 def _box_halves(piece: Piece) -> list[Piece]:
-    return [
-        Piece(chain, piece.segment, piece.references)
-        for chain in piece.chain.halves(_point(piece.segment).low)
-    ]
+    omega = _point(piece.segment).low
+    return [replace(piece, chain=chain) for chain in piece.chain.halves(omega)]
 
 
 def _band_halves(piece: Piece) -> list[Piece]:
-    """Halve the band, or that of the reference where it is the wider one in ln w."""
-    (reference, *others) = piece.references
-    if reference is not None and not others and _width(reference) > _width(piece.segment):
-        return [Piece(piece.chain, piece.segment, (half,)) for half in reference.halves()]
-    return [Piece(piece.chain, half, piece.references) for half in piece.segment.halves()]
+    """Halve the band, or that of the reference where responses change more on it; return nothing
+    where numbers do not lie close enough to halve any."""
+    segment, reference = piece.segment, piece.reference
+    if reference is not None:
+        changes = [piece.chain.change(*_ends(one)) for one in (segment, reference)]
+        if changes[1] > changes[0] and reference.is_divisible:
+            return [replace(piece, reference=half) for half in reference.halves()]
+    if not segment.is_divisible:
+        return []
+    return [replace(piece, segment=half) for half in segment.halves()]
+
+
+def _ends(segment: Segment) -> tuple[float, float]:
+    return segment.low, segment.high
 
 
 def _point(segment: Segment) -> Segment:
     return segment if segment.is_point else Segment(segment.middle, segment.middle)
-
-
-def _width(segment: Segment) -> float:
-    if segment.is_point:
-        return 0.0
-    return inf if segment.low == 0.0 or isinf(segment.high) else log(segment.high / segment.low)

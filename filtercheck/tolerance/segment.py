@@ -52,6 +52,12 @@ class Segment:
         (x1, y1), (x2, y2) = self.ends
         return (x1 + x2) / (y1 + y2)
 
+    @property
+    def is_divisible(self) -> bool:
+        """Whether there is a number between the ends, by more than a few roundings."""
+        middle = self.middle
+        return self.low * (1.0 + 1e-13) < middle < self.high * (1.0 - 1e-13)
+
     def halves(self) -> tuple[Segment, Segment]:
         return Segment(self.low, self.middle), Segment(self.middle, self.high)
 
@@ -94,13 +100,21 @@ def times_linear(forms: Complex, at_start: complex, at_end: complex) -> Complex:
     return grown
 
 
-def largest_product(ends: list[tuple[float, float]]) -> float:
-    """Return an upper bound of a product of functions linear in t, given at both ends, none
-    negative: the largest of its Bernstein coefficients."""
-    product = np.ones(1)
-    for pair in ends:
-        product = np.convolve(product, pair)
-    return float((product / _binomials(len(ends))).max())
+def largest_product(ends: list[Real]) -> float:
+    """Return an upper bound of a product of functions that are linear in t, or in t and t', none
+    negative: the largest of its Bernstein coefficients.
+
+    Each is given by its values at the ends, (2, 1), or at the four ends, (2, 2).
+    """
+    product = np.ones((1, 1))
+    for values in ends:
+        grown = np.zeros((product.shape[0] + 1, product.shape[1] + values.shape[1] - 1))
+        for k, row in enumerate(values):
+            for m, value in enumerate(row):
+                grown[k : k + product.shape[0], m : m + product.shape[1]] += value * product
+        product = grown
+    rows, columns = (_binomials(count - 1) for count in product.shape)
+    return float((product / np.outer(rows, columns)).max())
 
 
 @lru_cache(maxsize=64)

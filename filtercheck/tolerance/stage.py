@@ -13,6 +13,7 @@ from filtercheck.tolerance.box import Box
 from filtercheck.tolerance.corners import Nodes, common_degrees, nodes, true_corners
 from filtercheck.tolerance.terms import Terms, terms
 
+OVERHEAD = 200_000  # numbers that could be computed while a trial does everything else
 MINOR = 2e-5  # of the sum of the terms' sizes, what values taken as exact may do together
 MOST_LISTED = 14  # free values of a network whose corners are listed
 
@@ -52,11 +53,11 @@ class Stage:
 
     @property
     def cost(self) -> int:
-        """About how many numbers a trial computes."""
+        """About how many numbers a trial computes, or might in the time that it takes."""
         if self.is_large:
-            return 100 * sum(len(of.weights) for of in self.terms)
+            return OVERHEAD + 100 * sum(len(of.weights) for of in self.terms)
         corners: int = (1 << len(self.box.own_free)) * self.common_nodes
-        return corners * sum(of.degree + 1 for of in self.terms)
+        return OVERHEAD + corners * sum(of.degree + 1 for of in self.terms)
 
     @property
     def common_nodes(self) -> int:

@@ -10,6 +10,8 @@ from __future__ import annotations
 from dataclasses import dataclass
 from math import exp, inf, log
 
+import numpy as np
+
 from filtercheck.network.ratio import Real
 from filtercheck.tolerance.certificate import Sides, ratio, relative_ratio
 from filtercheck.tolerance.chain import Board, Chain
@@ -26,11 +28,12 @@ CLEAR_DB = 1e-9
 
 @dataclass(frozen=True)
 class Attempt:
-    """What is left to prove of one piece. [dB]"""
+    """What is left to prove of one piece."""
 
     gap_db: float
     challenge: Board | None = None
     work: int = 0
+    slack_db: float = 0.0  # what the worst boards at the ends leave: no gap is less than minus that
 
 
 @dataclass(frozen=True, eq=False)
@@ -46,6 +49,7 @@ class Trial:
         """Try the theorem in the direction of the worst boards at the ends."""
         sign = self.limit.sign
         worst: dict[tuple[int, int], Board] = {}
+        least = inf
         shares: dict[tuple[int, int], list[float]] = {}
         for k, omega in enumerate(self.ends):
             for m, other in enumerate(self.others):
@@ -57,6 +61,7 @@ class Trial:
                 slack = self._allowed(omega) - sum(heights)
                 if slack * DECIBEL < -CLEAR_DB:
                     return Attempt(-slack * DECIBEL, board)
+                least = min(least, slack * DECIBEL)
                 worst[k, m] = board
                 shares[k, m] = [height + slack / len(heights) for height in heights]
         bulge = log(self._bulge(shares))
@@ -70,7 +75,7 @@ class Trial:
             c = self._ratio(stage, g, enough)
             total += log(c) if 0.0 < c < inf else (inf if c else -inf)
             work += stage.cost * len(self.others)
-        return Attempt(total * DECIBEL, None, work)
+        return Attempt(total * DECIBEL, None, work, least)
 
     @property
     def ends(self) -> tuple[float, ...]:
@@ -109,20 +114,22 @@ class Trial:
     def _bulge(self, shares: dict[tuple[int, int], list[float]]) -> float:
         """Return by what factor the stages' bounds together may exceed the limit between the ends.
 
-        The bound of each stage is at most linear in t between its shares; the product of all,
-        over the limit, is 1 at the ends.
+        The bound of each stage is linear in t between its shares, and in t' of the reference;
+        the product of all, over the limit, is 1 at the ends.
         """
         goal = [self._allowed(omega) for omega in self.ends]
-        if len(self.others) > 1:
-            # In two directions: a product of means is at most the product of the largest.
-            stages = range(len(self.chain.stages))
-            largest = sum(max(one[i] for one in shares.values()) for i in stages)
-            return exp(largest - min(goal))
-        if len(self.ends) == 1:
+        if len(self.ends) == len(self.others) == 1:
             return 1.0
-        pairs = [(exp(a), exp(b)) for a, b in zip(shares[0, 0], shares[1, 0], strict=True)]
-        pairs.append((exp(-goal[0]), exp(-goal[1])))
-        return largest_product(pairs) * _above_chord(self.segment, goal[1] - goal[0])
+        rows, columns = range(len(self.ends)), range(len(self.others))
+        bounds = [
+            np.exp(np.array([[shares[k, m][i] for m in columns] for k in rows]))
+            for i in range(len(self.chain.stages))
+        ]
+        inverse = np.exp(-np.array(goal))[:, None]
+        if len(self.ends) == 1:
+            return largest_product([one.T for one in bounds]) * float(inverse[0, 0])
+        change = goal[1] - goal[0]
+        return largest_product([*bounds, inverse]) * _above_chord(self.segment, change)
 
 
 def _above_chord(segment: Segment, change: float) -> float:

@@ -32,7 +32,7 @@ from filtercheck.tolerance.poles import lean, poles, sharpest
 from filtercheck.wiring.drawing import Drawing
 from filtercheck.wiring.variation import Variation
 
-CHUNK = 250  # boards that are worked out together: what stays in the processor's cache
+CHUNK = 1000  # boards that are worked out together
 FIRST = 24  # boards that say where the grid lies
 
 Flags = NDArray[np.bool_]
