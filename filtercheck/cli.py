@@ -71,6 +71,7 @@ def _parser() -> argparse.ArgumentParser:
     check.add_argument("paths", nargs="*", metavar="PATH", help="files or folders; the board here")
     _outputs(check)
     _settings(check)
+    check.add_argument("--jobs", type=int, default=1, metavar="N", help="processes (default 1)")
     check.set_defaults(command=_check)
 
     response = commands.add_parser(
@@ -84,6 +85,13 @@ def _parser() -> argparse.ArgumentParser:
     response.add_argument("--points", type=int, default=200, help="of the band (default 200)")
     _settings(response)
     response.set_defaults(command=_response)
+
+    inspect = commands.add_parser(
+        "inspect", help="show poles, zeros and what takes up the margins", allow_abbrev=False
+    )
+    inspect.add_argument("file", metavar="FILE")
+    _settings(inspect)
+    inspect.set_defaults(command=_inspect)
 
     explain = commands.add_parser("explain", help="show the manual of a topic")
     explain.add_argument("topic", nargs="?", metavar="TOPIC", help="all topics where left out")
@@ -115,13 +123,17 @@ def _check(arguments: argparse.Namespace) -> int:
     targets = {"junit": arguments.junit, "evidence": arguments.evidence}
     files = {name: Path(target) for name, target in targets.items() if target is not None}
     _clear(list(files.values()), arguments.paths)
-    return _judge(arguments.paths, arguments.settings, files)
+    if not 1 <= arguments.jobs <= 256:
+        raise UsageError("--jobs: a number from 1 to 256")
+    return _judge(arguments.paths, arguments.settings, files, arguments.jobs)
 
 
-def _judge(paths: Sequence[str], settings: Sequence[str], files: dict[str, Path]) -> int:
+def _judge(
+    paths: Sequence[str], settings: Sequence[str], files: dict[str, Path], jobs: int = 1
+) -> int:
     from filtercheck.report import REPORTERS, console
 
-    run = pipeline.judged(paths, settings)
+    run = pipeline.judged(paths, settings, jobs)
     print(console.render(run), end="")
     for fault in run.faults:
         print(f"\n{fault}", file=sys.stderr)
@@ -145,6 +157,13 @@ def _response(arguments: argparse.Namespace) -> int:
     print(curve.render(curves.samples), end="")
     if not curves.stable:
         print("warning: not shown stable, so no response will be measured", file=sys.stderr)
+    return 0
+
+
+def _inspect(arguments: argparse.Namespace) -> int:
+    from filtercheck.report import inspection
+
+    print(inspection.render(pipeline.inspected(arguments.file, arguments.settings)), end="")
     return 0
 
 

@@ -53,6 +53,10 @@ class InputError(FiltercheckError):
         self.allowed = allowed
         self.fix = fix
 
+    def __reduce__(self) -> tuple[object, ...]:
+        """Tell how to make it again in another process."""
+        return _again, (self.problem, self.at, self.found, self.allowed, self.fix)
+
     def __str__(self) -> str:
         """Show the problem under the line that caused it."""
         number = str(self.at.line)
@@ -67,6 +71,10 @@ class InputError(FiltercheckError):
                 f"  fix      {_short(self.fix)}",
             ]
         )
+
+
+def _again(problem: str, at: Position, found: str, allowed: str, fix: str) -> InputError:
+    return InputError(problem, at, found=found, allowed=allowed, fix=fix)
 
 
 def _marked(at: Position) -> tuple[str, str]:
@@ -93,6 +101,10 @@ class InputErrors(FiltercheckError):
     def __init__(self, errors: Sequence[InputError]) -> None:
         super().__init__(f"{len(errors)} errors")
         self.errors = tuple(sorted(errors, key=_place))
+
+    def __reduce__(self) -> tuple[object, ...]:
+        """Tell how to make it again in another process."""
+        return InputErrors, (self.errors,)
 
     def __str__(self) -> str:
         return "\n\n".join(str(error) for error in self.errors)

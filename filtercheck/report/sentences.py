@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable
 from math import inf, isfinite, isnan
 
-from filtercheck.model.part import Figure, OpAmp, Part, Passive
+from filtercheck.model.part import OpAmp, Part, Passive
 from filtercheck.model.verdict import Finding, Judged, Outcome, Run, Verdict
 from filtercheck.quantities import rounded
 from filtercheck.wording import visible
@@ -149,14 +149,16 @@ def fitted(part: Part) -> str:
     """Return what is fitted: 'R4 21.5 kΩ'."""
     if isinstance(part, Passive):
         return f"{part.designator} {rounded(part.value, part.quantity, digits=6)}"
-    return (
-        f"{part.designator} gain-bandwidth {_figure(part.gain_bandwidth, 'frequency')}, "
-        f"open-loop gain {_figure(part.open_loop_gain, 'voltage-gain')}"
-    )
-
-
-def _figure(figure: Figure | None, quantity: str) -> str:
-    return rounded(figure.typical, quantity) if figure else "ideal"
+    figures = {
+        "gain-bandwidth": (part.gain_bandwidth, "frequency"),
+        "open-loop gain": (part.open_loop_gain, "voltage-gain"),
+    }
+    said = [
+        f"{name} {rounded(figure.typical, quantity)}"
+        for name, (figure, quantity) in figures.items()
+        if figure
+    ]
+    return f"{part.designator} {' and '.join(said) or 'ideal'}"
 
 
 def is_exact(part: Part) -> bool:

@@ -19,7 +19,7 @@ from filtercheck.network.ratio import Real
 from filtercheck.tolerance.chain import Board, Chain
 from filtercheck.tolerance.limit import DECIBEL, Limit
 
-POINTS = 64  # of a grid, about
+POINTS = 48  # of a grid, about
 FINE = 4000  # of the grid that tells where responses bend
 # Of the height of a parabola over its middle point, what it may be wrong by.
 DOUBTFUL = 0.5

@@ -35,8 +35,14 @@ def roots(coefficients: Real) -> Complex:
     return np.asarray(np.linalg.eigvals(companion) * scale)
 
 
-def extreme_board(stage: Stage, height: Callable[[Complex], Real], starts: Real) -> Real:
-    """Return the board whose poles make a height largest, by coordinate ascent from `starts`.
+def extreme_board(
+    stage: Stage,
+    height: Callable[[Complex], Real],
+    starts: Real,
+    side: str = "denominators",
+) -> Real:
+    """Return the board whose poles make a height largest, by coordinate ascent from `starts`;
+    or its zeros, those of the "numerators".
 
     Parameters
     ----------
@@ -44,8 +50,8 @@ def extreme_board(stage: Stage, height: Callable[[Complex], Real], starts: Real)
         Poles of shape (S, K) -> heights of shape (S,).
     starts : float array, shape (S, P + T)
     """
-    box = stage.box
-    reached = height(poles(stage, starts))
+    box, of = stage.box, stage.named(side)
+    reached = height(roots(of.at(starts)))
     point, best = starts[int(np.argmax(reached))], float(reached.max())
     for _ in range(SWEEPS):
         lines = np.tile(point, (3 * len(box.free), 1))
@@ -53,7 +59,7 @@ def extreme_board(stage: Stage, height: Callable[[Complex], Real], starts: Real)
             lines[3 * k : 3 * k + 3, coordinate] = np.linspace(
                 box.low[coordinate], box.high[coordinate], 3
             )
-        reached = height(poles(stage, lines)) if len(lines) else np.array([best])
+        reached = height(roots(of.at(lines))) if len(lines) else np.array([best])
         if not reached.max() > best + 1e-12 * abs(best):
             break
         point, best = lines[int(np.argmax(reached))], float(reached.max())

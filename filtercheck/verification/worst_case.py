@@ -32,7 +32,10 @@ from filtercheck.wiring.variation import Variation
 SLACK_DB = 0.004
 SLACK_PERCENTAGE = 0.0004
 # Numbers computed before an attempt at a proof ends: some ten seconds.
-BUDGET = 400_000_000
+BUDGET = 200_000_000
+# The same where a reference has to be chosen for each part of the box, which is hardly ever
+# proved later if not soon.
+BUDGET_OF_CHOICE = 50_000_000
 ROUNDS = 12  # of the search from one board, and of proofs that run into a worse board
 SEEDS = 9  # frequencies of a band where the search begins, next to those that the nominal board has
 CLIMBS = 5  # of those, the worst, where the ascent begins
@@ -222,7 +225,9 @@ class _Question:
                 if not pole_limits.proved(self.chain, claim, BUDGET):
                     return -inf, None
                 continue
-            proof = prove(self.chain, claim, self._choices_hz(claim, worst), BUDGET)
+            chooses = claim.reference is not None and claim.reference.is_choice
+            budget = BUDGET_OF_CHOICE if chooses else BUDGET
+            proof = prove(self.chain, claim, self._choices_hz(claim, worst), budget)
             if proof.challenge is not None:
                 return -inf, proof.challenge
             if proof.gap_db > 0.0:
