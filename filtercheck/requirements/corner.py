@@ -28,7 +28,7 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 from math import isfinite, nan
 
-from filtercheck.model.requirement import Band, Requirement
+from filtercheck.model.requirement import Band, Mask, Requirement
 from filtercheck.model.verdict import Finding
 from filtercheck.network.curve import Curve
 from filtercheck.quantities import rounded
@@ -77,13 +77,21 @@ class Corner:
         edge = low * (1.0 + margin) if index == 0 else high * (1.0 - margin)
         fallen = ((0.0, -self.fall_db),)
         if self.upward == (index == 1):
-            yield Limit("at most", fallen, (edge, edge), self.reference.any_of())
+            yield from self._fallen(fallen, edge)
             return
         start_hz, end_hz = self.reference.span_hz
         side = "above" if self.upward else "below"
         stretch = (start_hz, edge) if self.upward else (edge, end_hz)
         if stretch[0] < stretch[1]:
             yield Limit("at least", fallen, stretch, self.reference.every_of(side))
+
+    def _fallen(self, fallen: Mask, edge_hz: float) -> Iterator[Claim]:
+        """Yield that the gain has fallen at an edge, seen from the largest gain; and where the
+        pass band goes on beyond the edge, that its largest gain does not lie there."""
+        near, beyond = self.reference.divided(edge_hz, below=self.upward)
+        yield Limit("at most", fallen, (edge_hz, edge_hz), near)
+        if beyond is not None:
+            yield Limit("at most", ((0.0, 0.0),), beyond, near)
 
     def pull(self, finding: Finding) -> Pull | None:
         """Return the gain at the corner less that at the reference, or the reverse."""

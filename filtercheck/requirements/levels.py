@@ -127,6 +127,16 @@ class Reference:
         gain of a pass band is at least that anywhere in it."""
         return tolerance.Reference(self.span_hz, every=False)
 
+    def divided(self, edge_hz: float, *, below: bool) -> tuple[tolerance.Reference, Band | None]:
+        """Return the part of it below (or above) an edge, of which one frequency is enough, and
+        the band of the other part, if there is one."""
+        low, high = self.span_hz
+        if low == high or (low >= edge_hz if below else high <= edge_hz):
+            return self.any_of(), None
+        near = (low, min(high, edge_hz)) if below else (max(low, edge_hz), high)
+        beyond = (edge_hz, high) if below else (low, edge_hz)
+        return tolerance.Reference(near, every=False), beyond if beyond[0] < beyond[1] else None
+
     def every_of(self, side: str) -> tolerance.Reference:
         """Return it for a limit, on one side of it, that must be kept from the largest gain,
         wherever in the pass band that is."""

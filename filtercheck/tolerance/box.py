@@ -16,6 +16,8 @@ from numpy.typing import NDArray
 
 from filtercheck.network.polynomial import Real
 
+NARROWEST = 1e-9  # of a value: an interval as narrow is not halved
+
 
 @dataclass(frozen=True)
 class Common:
@@ -94,6 +96,10 @@ class Box:
         points[count + np.arange(count), self.free] = self.high[self.free]
         return points
 
+    def is_divisible(self, coordinate: int) -> bool:
+        """Whether an interval is wider than rounding lets its halves be."""
+        return bool(self.low[coordinate] * (1.0 + NARROWEST) < self.high[coordinate])
+
     def halves(self, coordinate: int) -> Iterator[Box]:
         """Yield the two halves of the box along one coordinate."""
         middle = self.centre[coordinate]
@@ -109,3 +115,12 @@ class Box:
         own_low, own_high = self.own_low.copy(), self.own_high.copy()
         own_low[coordinate], own_high[coordinate] = low, high
         return replace(self, own_low=own_low, own_high=own_high)
+
+
+def widest(box: Box, changes: Real) -> int | None:
+    """Return the free coordinate that changes most, of those that can be halved; None where
+    there is none."""
+    divisible = [k for k, i in enumerate(box.free) if box.is_divisible(int(i))]
+    if not divisible:
+        return None
+    return int(box.free[max(divisible, key=lambda k: float(changes[k]))])

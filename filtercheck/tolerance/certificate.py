@@ -113,11 +113,11 @@ def _spread(doubt: Real, g: tuple[complex, complex]) -> Real:
 
 
 def _largest(left: Real, right: Real) -> float:
-    """Return the largest left/right; infinity where the right side is not positive, unless
-    nothing but exact zeros stand on the left."""
+    """Return the largest left/right; infinity where the right side is negative, or where it is
+    zero and the left side is not."""
     with np.errstate(divide="ignore", invalid="ignore"):
-        quotient = np.where(right > 0.0, left / right, np.where(left > 0.0, inf, 0.0))
-    return float(quotient.max())
+        quotient = np.where(right > 0.0, left / right, inf)
+    return float(np.where((left == 0.0) & (right == 0.0), 0.0, quotient).max())
 
 
 def relative_ratio(

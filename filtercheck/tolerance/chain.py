@@ -7,11 +7,10 @@ from dataclasses import dataclass, replace
 from functools import cached_property
 from math import pi
 
-import numpy as np
-
 from filtercheck.network.curve import Curve
 from filtercheck.network.ratio import Ratio, Real
 from filtercheck.network.response import Response
+from filtercheck.tolerance.box import widest
 from filtercheck.tolerance.climb import Aim, best_corner, climb, heights
 from filtercheck.tolerance.stage import Stage
 
@@ -101,14 +100,22 @@ class Chain:
 
     def halves(self, omega: float) -> Iterator[Chain]:
         """Yield the chain with either half of a box, along the coordinate that matters most at a
-        frequency: that along which N and D change most; nothing where all is exact."""
-        changes = [stage.changes(omega) for stage in self.stages]
-        if not any(len(change) for change in changes):
+        frequency: that along which N and D change most; nothing where none can be
+        halved."""
+        best: tuple[float, int, int] | None = None
+        for k, stage in enumerate(self.stages):
+            changes = stage.changes(omega)
+            coordinate = widest(stage.box, changes)
+            if coordinate is not None:
+                change = float(changes[list(stage.box.free).index(coordinate)])
+                if best is None or change > best[0]:
+                    best = (change, k, coordinate)
+        if best is None:
             return
-        k = max(range(len(changes)), key=lambda i: float(changes[i].max(initial=0.0)))
-        stage = self.stages[k]
-        for box in stage.box.halves(int(stage.box.free[int(np.argmax(changes[k]))])):
-            yield replace(self, stages=(*self.stages[:k], stage.within(box), *self.stages[k + 1 :]))
+        _, k, coordinate = best
+        for box in self.stages[k].box.halves(coordinate):
+            part = self.stages[k].within(box)
+            yield replace(self, stages=(*self.stages[:k], part, *self.stages[k + 1 :]))
 
     def response(self, board: Board) -> Response:
         """Return the response of a board."""

@@ -11,43 +11,75 @@ from __future__ import annotations
 from collections.abc import Callable
 from dataclasses import dataclass
 from functools import cached_property, lru_cache
+from math import log
 
 import numpy as np
 from numpy.typing import NDArray
 
-from filtercheck.network.ratio import Real
+from filtercheck.network.ratio import Complex, Real
 from filtercheck.tolerance.chain import Board, Chain
 from filtercheck.tolerance.limit import DECIBEL, Limit
+from filtercheck.tolerance.poles import poles, qualities
 
-POINTS = 48  # of a grid, about
-FINE = 4000  # of the grid that tells where responses bend
+BENT = 0.25  # neper by which ln|H|^2 may bend from one point of a grid to the next
+LEAST_POINTS = 24  # of a grid
+MOST_FINE = 100_000  # points that tell where responses bend
+SHARP = 2.0  # a Q from which on a peak may hide between points
 # Of the height of a parabola over its middle point, what it may be wrong by.
 DOUBTFUL = 0.5
 LEAST_DOUBT = 1e-6  # of ln|H|, for rounding
 
 
-def grid(chain: Chain, boards: Board, band: tuple[float, float], span: tuple[float, float]) -> Real:
+def grid(chain: Chain, boards: Board, band: tuple[float, float]) -> Real:
     """Return angular frequencies of a band, ends included, in rising order.
 
-    Their density follows the square root of the second derivative of ln|H| by ln w, the largest
-    among some boards, so that a parabola is wrong by as little everywhere.
+    The step is such that ln|H| bends by `BENT` at most from one point to the next, on any board:
+    the second derivative by ln w is the largest that some boards have nearby, as near as their
+    sharp poles lie to one another.
 
     Parameters
     ----------
     boards : points of every stage, each of shape (S, P + T)
-    span : (float, float)
-        Between what frequencies responses do bend; beyond them a few points are enough.
     """
-    low, high = (min(max(end, span[0]), span[1]) for end in band)
+    every = [poles(stage, points) for stage, points in zip(chain.stages, boards, strict=True)]
+    sizes = np.abs(np.concatenate([one.ravel() for one in every]))
+    if not len(sizes):
+        return np.unique([*band])
+    # A decade beyond the poles a response is its own asymptote.
+    low, high = (min(max(end, sizes.min() / 10.0), sizes.max() * 10.0) for end in band)
     if not low < high:
         return np.unique([*band])
-    fine = np.geomspace(low, high, FINE)
-    bend = np.abs(np.diff(np.log(power(chain, boards, fine)), n=2, axis=1)).max(axis=0)
-    density = np.sqrt(np.pad(bend, 1, mode="edge"))
-    density += 0.05 * density.max() + 1e-12
-    steps = np.concatenate([[0.0], np.cumsum((density[:-1] + density[1:]) / 2.0)])
-    inner = np.interp(np.linspace(0.0, steps[-1], POINTS)[1:-1], steps, np.log(fine))
+    sharpest, stray = _sharpness(every)
+    step = min(1.0 / (4.0 * sharpest), log(high / low) / 1000.0)
+    fine = np.linspace(log(low), log(high), min(int(log(high / low) / step), MOST_FINE))
+    step = float(fine[1] - fine[0])
+    bend = np.abs(np.diff(np.log(power(chain, boards, np.exp(fine))), n=2, axis=1)).max(axis=0)
+    nearby = _widened(np.pad(bend, 1, mode="edge"), int(2.0 * stray / step) + 1)
+    counts = np.sqrt(nearby / BENT) + LEAST_POINTS / len(fine)
+    steps = np.concatenate([[0.0], np.cumsum((counts[:-1] + counts[1:]) / 2.0)])
+    inner = np.interp(np.arange(1, int(steps[-1])), steps, fine)
     return np.unique([band[0], low, *np.exp(inner), high, band[1]])
+
+
+def _sharpness(every: list[Complex]) -> tuple[float, float]:
+    """Return the highest Q of the poles of some boards, and how far the poles of a network that
+    has a sharp one stray from board to board, in ln w."""
+    sharpest, stray = 1.0, 0.0
+    for found in every:
+        q = qualities(found)
+        q = np.where(np.isfinite(q), q, 0.0)
+        sharpest = max(sharpest, float(q.max(initial=0.0)))
+        sharp = np.abs(found[q > SHARP])
+        if len(sharp):
+            stray = max(stray, log(sharp.max() / sharp.min()))
+    return sharpest, stray
+
+
+def _widened(values: Real, width: int) -> Real:
+    """Return the largest of the values within so many places to either side."""
+    from scipy.ndimage import maximum_filter1d
+
+    return np.asarray(maximum_filter1d(values, 2 * width + 1, mode="nearest"))
 
 
 def power(chain: Chain, boards: Board, omega: Real) -> Real:

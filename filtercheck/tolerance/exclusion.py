@@ -22,6 +22,7 @@ from math import cos, inf, pi, sin, sqrt, tan
 import numpy as np
 
 from filtercheck.network.ratio import Complex, Real
+from filtercheck.tolerance.box import widest
 from filtercheck.tolerance.corners import ROUNDING
 from filtercheck.tolerance.faces import keep, weighted
 from filtercheck.tolerance.poles import poles
@@ -120,9 +121,10 @@ def _doubt(stage: Stage, path: Path, budget: int, probe: Callable[[Stage], bool]
         elif probe(part):
             return Doubt(part, _place(middle))
         else:
-            left.extend(
-                (part.within(box), stretch) for box in part.box.halves(_widest(part, middle))
-            )
+            coordinate = _widest(part, middle)
+            if coordinate is None:
+                return Doubt(part, _place(middle))
+            left.extend((part.within(box), stretch) for box in part.box.halves(coordinate))
     return None
 
 
@@ -175,10 +177,10 @@ def _direction(values: Complex) -> complex:
     return turned.conjugate() / abs(mean)
 
 
-def _widest(stage: Stage, point: Path) -> int:
-    """Return the coordinate along which the denominator changes most at a point."""
+def _widest(stage: Stage, point: Path) -> int | None:
+    """Return the coordinate along which the denominator changes most at a point; None where all
+    are too narrow to halve."""
     box = stage.box
     row = powers(point.x, point.y, stage.terms[1].degree).sum(axis=1)
     low, high = np.split(stage.terms[1].at(box.ends(box.centre)) @ row, 2)
-    change = np.abs(high - low)
-    return int(box.free[int(np.argmax(change))])
+    return widest(box, np.abs(high - low))

@@ -55,7 +55,7 @@ def proved(chain: Chain, claim: Poles, budget: int) -> bool:
     """Whether the claim is proved for every board of a chain that is stable."""
     if claim.quantity == "Q":
         if claim.value <= 0.5:
-            return claim.sense == "at least"  # no pole has a lower one
+            return False  # real poles have none lower, and are no resonance
         return _clear_ray(chain, _angle(claim.value), budget)
     least = Poles("Q", "at least", 0.0)
     board = extreme(chain, least)

@@ -8,7 +8,7 @@ may have its worst there, and an equal part of what is left.
 from __future__ import annotations
 
 from dataclasses import dataclass
-from math import exp, inf, log
+from math import exp, inf, log, log1p
 
 import numpy as np
 
@@ -64,9 +64,9 @@ class Trial:
                 least = min(least, slack * DECIBEL)
                 worst[k, m] = board
                 shares[k, m] = [height + slack / len(heights) for height in heights]
-        bulge = log(self._bulge(shares))
+        bulge = self._bulge(shares)
         total, work = bulge, 0
-        enough = exp(-bulge / len(self.chain.stages)) * (1.0 - 1e-12)
+        enough = exp(-min(bulge, 600.0) / len(self.chain.stages)) * (1.0 - 1e-12)
         for index, stage in enumerate(self.chain.stages):
             g = {
                 (k, m): self._direction(stage, worst[k, m][index], shares[k, m][index], k, m)
@@ -112,39 +112,47 @@ class Trial:
         return exp(min(share, 600.0)) * (b.conjugate() / abs(b) if b else 1.0)
 
     def _bulge(self, shares: dict[tuple[int, int], list[float]]) -> float:
-        """Return by what factor the stages' bounds together may exceed the limit between the ends.
+        """Return by how much the stages' bounds together may exceed the limit between the ends,
+        as a logarithm.
 
         The bound of each stage is linear in t between its shares, and in t' of the reference;
         the product of all, over the limit, is 1 at the ends.
         """
         goal = [self._allowed(omega) for omega in self.ends]
         if len(self.ends) == len(self.others) == 1:
-            return 1.0
+            return 0.0
         rows, columns = range(len(self.ends)), range(len(self.others))
-        bounds = [
-            np.exp(np.array([[shares[k, m][i] for m in columns] for k in rows]))
+        levels = [
+            np.array([[shares[k, m][i] for m in columns] for k in rows])
             for i in range(len(self.chain.stages))
         ]
-        inverse = np.exp(-np.array(goal))[:, None]
+        # Each taken from its largest, so that what is raised to powers is at most 1.
+        tops = [float(level.max()) for level in levels]
+        if -inf in tops:
+            return 0.0  # a stage without any response: its bound is 0 on all of the segment
+        bounds = [np.exp(level - top) for level, top in zip(levels, tops, strict=True)]
+        least = min(goal)
         if len(self.ends) == 1:
-            return largest_product([one.T for one in bounds]) * float(inverse[0, 0])
-        change = goal[1] - goal[0]
-        return largest_product([*bounds, inverse]) * _above_chord(self.segment, change)
+            bounds, above = [one.T for one in bounds], 0.0
+        else:
+            bounds.append(np.exp(least - np.array(goal))[:, None])
+            above = _above_chord(self.segment, goal[1] - goal[0])
+        return log(largest_product(bounds)) + sum(tops) - least + above
 
 
 def _above_chord(segment: Segment, change: float) -> float:
-    """Return by what factor a power of w may rise above its chord in t, when its logarithm
+    """Return by how much a power of w may rise above its chord in t, as a logarithm, when its own
     changes so much over the segment.
 
     With w = X/Y and X, Y linear, the second derivative of w^-a, over w^-a, is at least
     -a max(dX/X, dY/Y)^2, and a function lies above its chord by at most an eighth of that.
     """
     if not change:
-        return 1.0
+        return 0.0
     (x1, y1), (x2, y2) = segment.ends
     step = max(abs(x2 - x1) / min(x1, x2), abs(y2 - y1) / min(y1, y2))
     power = abs(change) / log(segment.high / segment.low)
-    return 1.0 + power * step**2 / 8.0 * exp(abs(change))
+    return log1p(power * step**2 / 8.0 * exp(abs(change))) if abs(change) < 600.0 else inf
 
 
 def _ends(segment: Segment) -> tuple[float, ...]:

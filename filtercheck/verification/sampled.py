@@ -33,7 +33,7 @@ from filtercheck.wiring.drawing import Drawing
 from filtercheck.wiring.variation import Variation
 
 CHUNK = 1000  # boards that are worked out together
-FIRST = 24  # boards that say where the grid lies
+FIRST = 64  # boards that say where the grid lies
 
 Flags = NDArray[np.bool_]
 
@@ -184,23 +184,13 @@ class Sampled:
     def _grid(self, band_hz: tuple[float, float]) -> Real:
         """Return the grid of a band; equal bands have the same one."""
         if band_hz not in self._grids:
-            boards = self._first[: self._length]
             band = (self._chain.omega(band_hz[0]), self._chain.omega(band_hz[1]))
-            self._grids[band_hz] = grid(self._chain, boards, band, self._span(boards))
+            self._grids[band_hz] = grid(self._chain, self._first[: self._length], band)
         return self._grids[band_hz]
 
     @cached_property
     def _grids(self) -> dict[tuple[float, float], Real]:
         return {}
-
-    def _span(self, boards: Board) -> tuple[float, float]:
-        """Return between what frequencies responses bend: a decade about the poles."""
-        sizes = [
-            np.abs(poles(stage, points)).ravel()
-            for stage, points in zip(self._chain.stages, boards, strict=True)
-        ]
-        every = np.concatenate(sizes)
-        return (float(every.min()) / 10.0, float(every.max()) * 10.0) if len(every) else (1.0, 1.0)
 
 
 def interval(good: int, boards: int, confidence: float) -> tuple[float, float]:

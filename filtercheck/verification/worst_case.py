@@ -38,8 +38,8 @@ BUDGET = 200_000_000
 BUDGET_OF_CHOICE = 50_000_000
 ROUNDS = 12  # of the search from one board, and of proofs that run into a worse board
 SEEDS = 9  # frequencies of a band where the search begins, next to those that the nominal board has
-CLIMBS = 5  # of those, the worst, where the ascent begins
-RANDOM_BOARDS = 4
+CLIMBS = 3  # of those, the worst, where the ascent begins
+RANDOM_BOARDS = 2
 
 
 @dataclass(frozen=True)
@@ -78,16 +78,19 @@ class _Question:
 
     def answer(self) -> Finding:
         worst = self._searched()
+        goals = self._goals(worst)
+        certain = -inf
         for _ in range(ROUNDS):
-            certain, challenge = self._proved(worst)
-            if challenge is None:
+            if not goals:
                 break
-            worse = self._refined(challenge)
-            if not worse.finding.reached < worst.finding.reached:
+            certain, challenge = self._attempted(goals[0], worst)
+            if challenge is not None and self._is_worse(challenge, worst):
+                worst = self._refined(challenge)
+                goals = self._goals(worst)
+            elif challenge is None and (certain >= 0.0 or len(goals) == 1):
                 break
-            worst = worse
-        else:
-            certain = -inf
+            else:
+                goals = goals[1:]
         finding = worst.finding
         return replace(
             finding,
@@ -120,19 +123,15 @@ class _Question:
                 starts.append(self._measured(pole_limits.extreme(self.chain, claim)))
             else:
                 starts.extend(self._measured(board) for board in self._seeds(claim))
-        refined = [self._refined(start) for start in sorted(starts, key=_margin)[:3]]
-        return min(refined, key=_margin)
+        return min((self._refined(start) for start in starts[1:] or starts), key=_margin)
 
     def _seeds(self, limit: Limit) -> Iterator[Board]:
-        """Yield the boards that are worst at frequencies of the band, and what becomes of some
-        random ones: of each the worst."""
+        """Yield the board that is worst at the worst of some frequencies of the band; random
+        boards to begin with may find a worse one than the best corner does."""
         chain = self.chain if limit.reference is None else self.chain.relative
-        aims = [aim for aim, _ in self._worst_aims(chain, limit)]
-        for aim in aims[:2]:
-            yield chain.worst(aim)
-        for aim in aims[:1]:
-            drawn = [chain.climbed(aim, board) for board in self._drawn(chain)]
-            yield max(drawn, key=lambda board: sum(chain.heights(aim, board)))
+        for aim, _ in self._worst_aims(chain, limit)[:1]:
+            boards = [chain.worst(aim), *(chain.climbed(aim, one) for one in self._drawn(chain))]
+            yield max(boards, key=lambda board: sum(chain.heights(aim, board)))
 
     def _worst_aims(self, chain: Chain, limit: Limit) -> list[tuple[Aim, float]]:
         """Return the aims, and the excess of the best corner over what is allowed, the worst
@@ -202,24 +201,27 @@ class _Question:
             best = next_one
         return best
 
-    def _proved(self, worst: Found) -> tuple[float, Board | None]:
-        """Return the margin that is proved, or a board on which the proof broke."""
-        reached = worst.finding.reached
-        level = worst.finding.margin_quantity == "level"
-        if isnan(reached) or reached == -inf:
-            return -inf, None
-        if reached == inf:
-            return self._attempted(0.0, worst, level)
-        goal = reached - (SLACK_DB if level else SLACK_PERCENTAGE)
-        if reached >= 0.0:
-            goal = max(goal, 0.0)
-        certain, challenge = self._attempted(goal, worst, level)
-        if challenge is None and certain < 0.0 < goal:
-            return self._attempted(0.0, worst, level)
-        return certain, challenge
+    def _is_worse(self, challenge: Board, worst: Found) -> bool:
+        """Whether a board on which the proof broke is worse than the worst one found. It need not
+        be: the parts of one network may be torn apart, a reference be another than its own."""
+        return self._refined(challenge).finding.reached < worst.finding.reached
 
-    def _attempted(self, goal: float, worst: Found, level: bool) -> tuple[float, Board | None]:
-        certain = goal
+    def _goals(self, worst: Found) -> list[float]:
+        """Return the margins to prove, one after the other until one is: one hardly smaller than
+        that of the worst board, then that there is any."""
+        reached = worst.finding.reached
+        if isnan(reached) or reached == -inf:
+            return []
+        if reached == inf:
+            return [0.0]
+        slack = SLACK_DB if worst.finding.margin_quantity == "level" else SLACK_PERCENTAGE
+        if reached < 0.0:
+            return [reached - slack]
+        return [reached - slack, 0.0] if reached > slack else [0.0]
+
+    def _attempted(self, goal: float, worst: Found) -> tuple[float, Board | None]:
+        """Return the margin that is proved, or a board on which the proof broke."""
+        level, certain = worst.finding.margin_quantity == "level", goal
         for claim in self.wanted.claims(self.index, goal):
             if isinstance(claim, Poles):
                 if not pole_limits.proved(self.chain, claim, BUDGET):
