@@ -2,6 +2,6 @@
 
 from hypothesis import settings
 
-settings.register_profile("steady", derandomize=True, database=None)
-settings.register_profile("explore", max_examples=5000)
+settings.register_profile("steady", derandomize=True, database=None, deadline=None)
+settings.register_profile("explore", max_examples=5000, deadline=None)
 settings.load_profile("steady")
