@@ -11,6 +11,7 @@ from filtercheck.model.subject import Connection, Name, Section, Subject
 from filtercheck.quantities import parse
 from filtercheck.reading import schema
 from filtercheck.reading.links import loose_ends
+from filtercheck.reading.networks import unlike
 from filtercheck.reading.parts import parts
 from filtercheck.reading.source import Data, Path, Source, read
 
@@ -44,6 +45,7 @@ def subject(text: str, file: str) -> Subject:
         requirements=tuple(_requirements(source, faults)),
         at=source.values["filter",],
     )
+    faults.extend(bounded(unlike(found.parts)))
     stated = {part: source.at("parts", part) for part in _keys(source, "parts")}
     faults.extend(bounded(loose_ends(found, stated)))
     if faults:

@@ -118,8 +118,8 @@ def sensitive(finding: Finding, most: int) -> str:
 
 
 def place(finding: Finding) -> str:
-    """Return where the approach is closest."""
-    return "nowhere" if finding.freq_hz is None else rounded(finding.freq_hz, "frequency")
+    """Return where the approach is closest; '-' where there is no such place."""
+    return "-" if finding.freq_hz is None else rounded(finding.freq_hz, "frequency")
 
 
 def summary(verdict: Verdict) -> str:

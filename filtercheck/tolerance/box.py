@@ -52,7 +52,7 @@ class Box:
         """The coordinates that are not exact."""
         return np.flatnonzero(self.low < self.high)
 
-    @property
+    @cached_property
     def own_free(self) -> list[int]:
         """The symbols whose own value is not exact."""
         return [int(i) for i in self.free if i < len(self.own_low)]

@@ -66,7 +66,12 @@ class Chain:
     def worst(self, aim: Aim) -> Board:
         """Return the board where an aim is largest, as far as the ascent from the best corner
         finds it."""
-        return self.climbed(aim, self.corner(aim))
+        found = []
+        for stage in self.stages:
+            if aim not in stage.worst:
+                stage.worst[aim] = climb(stage, aim, best_corner(stage, aim))
+            found.append(stage.worst[aim])
+        return tuple(found)
 
     def corner(self, aim: Aim) -> Board:
         """Return the board where an aim is largest among the corners of the boxes."""

@@ -81,6 +81,11 @@ class Stage:
         return Stage(self.numerator, self.denominator, box, (doubts[0], doubts[1]))
 
     @cached_property
+    def worst(self) -> dict[object, Real]:
+        """The worst boards that were found already, by what they are worst at."""
+        return {}
+
+    @cached_property
     def degrees(self) -> tuple[int, ...]:
         return common_degrees(self.terms, self.box)
 
@@ -124,7 +129,7 @@ class Stage:
                 change += np.nan_to_num(np.abs(high - low) / (np.abs(high) + np.abs(low)))
         return change
 
-    @property
+    @cached_property
     def degree(self) -> int:
         return max(of.degree for of in self.terms)
 

@@ -29,7 +29,7 @@ class Terms:
     weights: Real  # (T,)
     shared: int  # how many of the coordinates are common factors; these come last
 
-    @property
+    @cached_property
     def degree(self) -> int:
         """The highest power of s."""
         return int(self.powers.max(initial=0))
