@@ -19,8 +19,8 @@ from filtercheck.tolerance.limit import Limit
 from filtercheck.tolerance.segment import Segment
 from filtercheck.tolerance.trial import Attempt, Trial
 
-# The band is halved first, unless it has less than this part of what the box adds to a gap.
-BAND_FIRST = 0.01
+# More than this of a gap does not come from what was taken as exact.
+LIGHTNESS_DB = 0.02
 
 
 @dataclass(frozen=True)
@@ -56,7 +56,9 @@ def prove(chain: Chain, limit: Limit, choices_hz: tuple[float, ...], budget: int
     if limit.reference is None:
         return _proof(chain, limit, choices_hz, budget)
     light = _proof(chain.relative.lightened, limit, choices_hz, budget)
-    if light.challenge is not None or light.gap_db <= 0.0 or not chain.relative.is_lighter:
+    if light.challenge is not None or light.gap_db <= 0.0 or light.gap_db > LIGHTNESS_DB:
+        return light
+    if not chain.relative.is_lighter:
         return light
     return _proof(chain.relative, limit, choices_hz, budget)
 
@@ -136,12 +138,10 @@ def _halves(
     if middle == piece.segment and reference == piece.reference:
         return _box_halves(piece)
     single = _attempt(Piece(piece.chain, middle, reference), limit, choices)
-    from_box = single.gap_db + single.slack_db
-    if (
-        single.challenge is None
-        and from_box > 0.0
-        and not attempt.gap_db - single.gap_db > from_box
-    ):
+    from_box, from_band = single.gap_db + single.slack_db, attempt.gap_db - single.gap_db
+    if limit.reference is not None and limit.reference.is_choice and single.gap_db > 0.0:
+        from_band = -inf  # the slack is that from a reference that may be a bad choice
+    if single.challenge is None and from_band < from_box:
         return _box_halves(piece) or _band_halves(piece)
     return _band_halves(piece) or _box_halves(piece)
 
