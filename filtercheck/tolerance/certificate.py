@@ -93,7 +93,10 @@ def _kept(
     a, b = stage.named(sides.above), stage.named(sides.below)
     powers = segment.powers(stage.degree)
     forms = [powers[: of.degree + 1] for of in (a, b)]
-    sizes = [of.size(stage.box.high) @ np.abs(f) for of, f in zip((a, b), forms, strict=True)]
+    sizes = [
+        (ROUNDING * of.size(stage.box.high) + doubt) @ np.abs(form)
+        for of, doubt, form in zip((a, b), stage.doubts_of(sides.above), forms, strict=True)
+    ]
     if segment.is_point:
         left, right = forms[0], c * g[0] * forms[1]
         slack: Real = sizes[0] + c * abs(g[0]) * sizes[1]
@@ -104,7 +107,7 @@ def _kept(
         weighted(a, stage.box, stage.degrees, left),
         weighted(b, stage.box, stage.degrees, right),
         stage.box,
-        ROUNDING * np.tile(slack, stage.common_nodes),
+        np.tile(slack, stage.common_nodes),
     )
 
 

@@ -159,10 +159,11 @@ def _excluded_by_faces(stage: Stage, path: Path) -> bool:
         _direction(boards @ powers(path.at(i).x, path.at(i).y, of.degree).sum(axis=1))
         for i in (0, 1)
     ]
-    sizes = (of.size(box.high) @ np.abs(forms)).astype(complex)
+    doubts = ROUNDING * of.size(box.high) + stage.doubts[1]
+    sizes = (doubts @ np.abs(forms)).astype(complex)
     slack: Real = np.real(times_linear(sizes, abs(g[0]), abs(g[1])))
     right = weighted(of, box, stage.degrees, times_linear(forms, g[0], g[1]))
-    return keep(None, right, box, ROUNDING * np.tile(slack, stage.common_nodes))
+    return keep(None, right, box, np.tile(slack, stage.common_nodes))
 
 
 def _direction(values: Complex) -> complex:

@@ -68,7 +68,7 @@ def _proof(chain: Chain, limit: Limit, choices_hz: tuple[float, ...], budget: in
     while left and work <= budget:
         piece = left.pop()
         attempt = _attempt(piece, limit, choices_hz)
-        work += attempt.work
+        work += 2 * attempt.work  # where it fails, the middle frequency is tried as well
         if attempt.challenge is not None:
             return Proof(attempt.gap_db, attempt.challenge)
         if attempt.gap_db > 0.0:

@@ -46,6 +46,11 @@ class Stage:
         """Return the terms of the "numerators" or of the "denominators"."""
         return self.terms[0] if side == "numerators" else self.terms[1]
 
+    def doubts_of(self, above: str) -> tuple[Real, Real]:
+        """Return the doubts of the side that is above in a comparison, and of the other."""
+        top, bottom = self.doubts
+        return (top, bottom) if above == "numerators" else (bottom, top)
+
     @property
     def is_large(self) -> bool:
         """Whether it has more free values than corners can be listed for."""

@@ -48,6 +48,7 @@ class Trial:
     def attempt(self) -> Attempt:
         """Try the theorem in the direction of the worst boards at the ends."""
         sign = self.limit.sign
+        work = sum(stage.cost for stage in self.chain.stages) * len(self.others)
         worst: dict[tuple[int, int], Board] = {}
         least = inf
         shares: dict[tuple[int, int], list[float]] = {}
@@ -60,12 +61,12 @@ class Trial:
                 heights = self.chain.heights(aim, board)
                 slack = self._allowed(omega) - sum(heights)
                 if slack * DECIBEL < -CLEAR_DB:
-                    return Attempt(-slack * DECIBEL, board)
+                    return Attempt(-slack * DECIBEL, board, work)
                 least = min(least, slack * DECIBEL)
                 worst[k, m] = board
                 shares[k, m] = [height + slack / len(heights) for height in heights]
         bulge = self._bulge(shares)
-        total, work = bulge, 0
+        total = bulge
         enough = exp(-min(bulge, 600.0) / len(self.chain.stages)) * (1.0 - 1e-12)
         for index, stage in enumerate(self.chain.stages):
             g = {
@@ -74,7 +75,6 @@ class Trial:
             }
             c = self._ratio(stage, g, enough)
             total += log(c) if 0.0 < c < inf else (inf if c else -inf)
-            work += stage.cost * len(self.others)
         return Attempt(total * DECIBEL, None, work, least)
 
     @property
