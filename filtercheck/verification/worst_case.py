@@ -31,11 +31,11 @@ from filtercheck.wiring.variation import Variation
 # How much smaller than the margin found the margin to prove is; they are to agree within 0.01 dB.
 SLACK_DB = 0.004
 SLACK_PERCENTAGE = 0.0004
-# Numbers computed before an attempt at a proof ends: some ten seconds.
-BUDGET = 200_000_000
+# Numbers computed, or that could be in the time, before an attempt at a proof ends.
+BUDGET = 800_000_000
 # The same where a reference has to be chosen for each part of the box, which is hardly ever
 # proved later if not soon.
-BUDGET_OF_CHOICE = 50_000_000
+BUDGET_OF_CHOICE = 400_000_000
 ROUNDS = 12  # of the search from one board, and of proofs that run into a worse board
 SEEDS = 9  # frequencies of a band where the search begins, next to those that the nominal board has
 CLIMBS = 3  # of those, the worst, where the ascent begins
