@@ -12,6 +12,7 @@ from collections.abc import Iterator
 from dataclasses import dataclass, replace
 from functools import cached_property
 from hashlib import sha256
+from itertools import islice
 from math import inf, isnan
 
 import numpy as np
@@ -106,24 +107,22 @@ class _Question:
         found = []
         for one in self.variation.reconciled(board):
             curve = self._curve(self.variation.fitted(one))
-            found.append(Found(one, list(self.wanted.findings(curve))[self.index]))
+            finding = next(islice(self.wanted.findings(curve), self.index, None))
+            found.append(Found(one, finding))
         return min(found, key=_margin)
 
     def _curve(self, parts: dict[str, Part]) -> Curve:
         return Curve(self.variation.wiring.response(self.output, parts))
 
-    @cached_property
-    def _nominal(self) -> Found:
-        return self._measured(self.chain.nominal)
-
     def _searched(self) -> Found:
-        starts = [self._nominal]
+        starts: list[Found] = []
         for claim in self.wanted.claims(self.index, 0.0):
             if isinstance(claim, Poles):
                 starts.append(self._measured(pole_limits.extreme(self.chain, claim)))
             else:
                 starts.extend(self._measured(board) for board in self._seeds(claim))
-        return min((self._refined(start) for start in starts[1:] or starts), key=_margin)
+        starts = starts or [self._measured(self.chain.nominal)]
+        return min((self._refined(start) for start in starts), key=_margin)
 
     def _seeds(self, limit: Limit) -> Iterator[Board]:
         """Yield the board that is worst at the worst of some frequencies of the band; random
