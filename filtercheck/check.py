@@ -99,6 +99,7 @@ class _Bench:
                     wanted,
                     self.variation,
                     requirement.output,
+                    curve,
                     requirement.sampling,
                     identity,
                     stable,

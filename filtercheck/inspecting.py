@@ -10,8 +10,8 @@ from filtercheck.model.inspection import Budget, Inspection
 from filtercheck.model.subject import Subject
 from filtercheck.model.verdict import Finding, Judged
 from filtercheck.verification import roots
-from filtercheck.wiring.limits import Slot, stated
-from filtercheck.wiring.variation import FIGURES, Variation
+from filtercheck.wiring.limits import stated
+from filtercheck.wiring.variation import Variation
 from filtercheck.wiring.wired import wired
 
 
@@ -72,13 +72,5 @@ def _widths(variation: Variation) -> Iterator[tuple[str, float]]:
     """Yield half the width of the range of each value, in per cent."""
     for of in variation.slots:
         for slot in of:
-            yield _name(slot), 100.0 * _half_width(slot)
-
-
-def _name(slot: Slot) -> str:
-    return slot.part.designator + FIGURES.get(slot.symbol.kind, "")
-
-
-def _half_width(slot: Slot) -> float:
-    within = stated(slot.part, slot.symbol.kind)
-    return (within.high - within.low) / (2.0 * within.typical)
+            within = stated(slot.part, slot.symbol.kind)
+            yield slot.name, 50.0 * (within.max - within.min) / within.typical

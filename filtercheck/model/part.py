@@ -35,7 +35,7 @@ class Passive:
 
 @dataclass(frozen=True)
 class Figure:
-    """One figure of an amplifier: what is typical and between what limits it lies."""
+    """A value: what is typical and between what limits it lies."""
 
     typical: float
     min: float
@@ -52,6 +52,11 @@ class OpAmp:
     distribution: str
     changed: bool
     at: Position
+
+    @property
+    def figures(self) -> dict[str, Figure | None]:
+        """Its figures by name."""
+        return {"gain_bandwidth": self.gain_bandwidth, "open_loop_gain": self.open_loop_gain}
 
 
 Part = Passive | OpAmp

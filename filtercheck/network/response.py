@@ -10,12 +10,13 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import cached_property
+from math import log
 
 import numpy as np
 
 from filtercheck.network.ratio import Complex, Ratio, Real, horner, log_derivative
 
-DECIBEL_PER_NEPER = 20.0 / np.log(10.0)
+DECIBEL_PER_NEPER = 20.0 / log(10.0)
 
 
 @dataclass(frozen=True, eq=False)

@@ -94,9 +94,7 @@ def _details(verdict: Verdict, judged: Judged) -> Iterator[str]:
     says = [f"{verdict.kind} of {verdict.output}: {sentences.summary(verdict)}"]
     beyond = [sentences.said(one) for one in verdict.findings[1:] if one.reached < 0.0]
     says += [text for text in beyond if text != sentences.summary(verdict)]
-    says += [f"a board that oscillates: {sentences.board(verdict.unstable)}"] * bool(
-        verdict.unstable
-    )
+    says += sentences.oscillating(verdict)
     for finding in verdict.findings[:1]:
         says += _worst(verdict, finding, judged)
     for text in says:

@@ -62,10 +62,7 @@ def _part(part: Part) -> Json:
             "changed": part.changed,
         }
     return {
-        "amplifier": {
-            "gain_bandwidth": _figure(part.gain_bandwidth),
-            "open_loop_gain": _figure(part.open_loop_gain),
-        },
+        "amplifier": {name: _figure(figure) for name, figure in part.figures.items()},
         "unit": "gain_bandwidth in Hz, open_loop_gain in V/V",
         "distribution": part.distribution,
         "changed": part.changed,
@@ -121,8 +118,7 @@ def _board(parts: Iterable[Part]) -> Json:
         if isinstance(part, Passive):
             values[part.designator] = part.value
             continue
-        figures = {"gain_bandwidth": part.gain_bandwidth, "open_loop_gain": part.open_loop_gain}
-        for name, figure in figures.items():
+        for name, figure in part.figures.items():
             values[f"{part.designator}.{name}"] = figure.typical if figure else "ideal"
     return values or None
 

@@ -66,8 +66,7 @@ def _case(verdict: Verdict, judged: Judged) -> TestCase:
 
 def _boards(verdict: Verdict, judged: Judged) -> Iterator[str]:
     """Yield the boards that explain a verdict."""
-    if verdict.unstable:
-        yield f"a board that oscillates: {sentences.board(verdict.unstable)}"
+    yield from sentences.oscillating(verdict)
     for finding in verdict.findings[:1]:
         if finding.worst:
             yield f"worst board: {sentences.board(finding.worst)}"

@@ -77,6 +77,11 @@ def board(parts: Iterable[Part]) -> str:
     return ", ".join(fitted(part) for part in parts)
 
 
+def oscillating(verdict: Verdict) -> list[str]:
+    """Return the board that oscillates, in a line; nothing where none is the reason."""
+    return [f"a board that oscillates: {board(verdict.unstable)}"] if verdict.unstable else []
+
+
 def varied(finding: Finding, judged: Judged) -> list[Part]:
     """Return the parts of the worst board that are not as fitted."""
     stated = {part.designator: part for part in judged.parts}
@@ -101,10 +106,9 @@ def recomputed(verdict: Verdict, finding: Finding, judged: Judged) -> str:
 def _settings(part: Part) -> list[str]:
     if isinstance(part, Passive):
         return [f"{part.designator}={part.value:.10g}"]
-    figures = {"gain_bandwidth": part.gain_bandwidth, "open_loop_gain": part.open_loop_gain}
     return [
         f"{part.designator}.{name}={figure.typical:.10g}"
-        for name, figure in figures.items()
+        for name, figure in part.figures.items()
         if figure
     ]
 
@@ -165,8 +169,7 @@ def is_exact(part: Part) -> bool:
     """Whether nothing of a part may vary."""
     if isinstance(part, Passive):
         return part.tolerance is None
-    figures = [figure for figure in (part.gain_bandwidth, part.open_loop_gain) if figure]
-    return all(figure.min == figure.max for figure in figures)
+    return all(figure.min == figure.max for figure in part.figures.values() if figure)
 
 
 def ideal_figures(part: Part) -> str:

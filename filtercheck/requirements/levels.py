@@ -11,10 +11,9 @@ import numpy as np
 
 from filtercheck.model.requirement import Band, Mask, Requirement
 from filtercheck.network.curve import EVERYWHERE, Curve, Point
-from filtercheck.network.ratio import Real
 from filtercheck.quantities import rounded
 from filtercheck.tolerance import limit as tolerance
-from filtercheck.tolerance.limit import Pull
+from filtercheck.tolerance.limit import Pull, levels_at
 
 
 @dataclass(frozen=True)
@@ -39,7 +38,7 @@ def nearest(curve: Curve, band_hz: Band, limit_db: Mask, sense: str) -> Approach
     for stretch, line in _stretches(band_hz, limit_db):
         freq_hz = curve.candidates_hz(stretch, line)
         gain_db = curve.response.gain_db(freq_hz)
-        limit = _level_db(limit_db, freq_hz)
+        limit = levels_at(limit_db, freq_hz)
         with np.errstate(invalid="ignore"):
             margin = sign * (limit - gain_db)
         i = int(np.argmin(margin))
@@ -57,15 +56,8 @@ def _stretches(band_hz: Band, limit_db: Mask) -> Iterator[tuple[Band, float]]:
         if len(limit_db) == 1:
             yield stretch, 0.0
         else:
-            below, above = _level_db(limit_db, np.array(stretch))
+            below, above = levels_at(limit_db, np.array(stretch))
             yield stretch, float((above - below) / np.log(stretch[1] / stretch[0]))
-
-
-def _level_db(limit_db: Mask, freq_hz: Real) -> Real:
-    points, levels = np.array(limit_db).T
-    if len(limit_db) == 1:
-        return np.full(len(freq_hz), levels[0])
-    return np.asarray(np.interp(np.log(freq_hz), np.log(points), levels), dtype=float)
 
 
 def band(requirement: Requirement, key: str = "band") -> Band:
@@ -106,7 +98,7 @@ def crossed(floor: Mask, ceiling: Mask, band_hz: Band) -> bool:
     if len(floor) == len(ceiling) == 1:
         return floor[0][1] > ceiling[0][1]
     freq_hz = np.array(points)
-    return bool((_level_db(floor, freq_hz) > _level_db(ceiling, freq_hz)).any())
+    return bool((levels_at(floor, freq_hz) > levels_at(ceiling, freq_hz)).any())
 
 
 @dataclass(frozen=True)

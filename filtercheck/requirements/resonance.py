@@ -25,14 +25,13 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 from math import pi
 
-import numpy as np
-
 from filtercheck.model.requirement import Band, Requirement
 from filtercheck.model.verdict import Finding
 from filtercheck.network.curve import Curve
 from filtercheck.requirements.kind import Kind
 from filtercheck.requirements.numbers import within
 from filtercheck.tolerance.limit import Claim, Poles, Pull
+from filtercheck.tolerance.poles import qualities
 
 SUBJECTS = {"centre frequency": ("centre", "frequency"), "Q": ("Q", "number")}
 
@@ -85,8 +84,7 @@ def _sharpest(curve: Curve) -> complex | None:
     pairs = poles[poles.imag > 0.0]
     if not len(pairs):
         return None
-    with np.errstate(divide="ignore"):
-        q = np.abs(pairs) / (-2.0 * pairs.real)
+    q = qualities(pairs)
     return complex(min(pairs[q >= q.max() * (1.0 - 1e-12)], key=abs))
 
 

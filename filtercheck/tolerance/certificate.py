@@ -36,9 +36,9 @@ from math import comb, inf
 import numpy as np
 
 from filtercheck.network.ratio import Complex, Real
-from filtercheck.tolerance.corners import ROUNDING, Nodes
+from filtercheck.tolerance.corners import Nodes
 from filtercheck.tolerance.faces import keep, weighted
-from filtercheck.tolerance.segment import Segment, times_linear
+from filtercheck.tolerance.segment import Segment, times_linear, times_size
 from filtercheck.tolerance.stage import Stage
 
 
@@ -66,6 +66,10 @@ class Sides:
     def below(self) -> str:
         return "denominators" if self.above == "numerators" else "numerators"
 
+    @property
+    def both(self) -> tuple[str, str]:
+        return self.above, self.below
+
 
 def ratio(
     stage: Stage, sides: Sides, segment: Segment, g: tuple[complex, complex], enough: float
@@ -74,45 +78,25 @@ def ratio(
 
     For a stage of more free values than can be listed, return `enough` or infinity.
     """
-    if stage.is_large:
-        return enough if _kept(stage, sides, segment, g, enough) else inf
-    a = form(getattr(stage, sides.above), segment, stage.degree)
-    b = form(getattr(stage, sides.below), segment, stage.degree)
-    if segment.is_point:
-        size = np.abs(a.at_nodes) + a.doubt
-        return _largest(size, np.real(g[0] * b.at_nodes) - abs(g[0]) * b.doubt)
-    left: Real = np.abs(times_linear(a.at_nodes, 1.0, 1.0)) + _spread(a.doubt, (1.0, 1.0))
-    right = np.real(times_linear(b.at_nodes, *g)) - _spread(b.doubt, g)
-    return _largest(left, right)
-
-
-def _kept(
-    stage: Stage, sides: Sides, segment: Segment, g: tuple[complex, complex], c: float
-) -> bool:
-    """Whether the theorem holds for one c."""
-    a, b = stage.named(sides.above), stage.named(sides.below)
-    powers = segment.powers(stage.degree)
-    forms = [powers[: of.degree + 1] for of in (a, b)]
-    sizes = [
-        (ROUNDING * of.size(stage.box.high) + doubt) @ np.abs(form)
-        for of, doubt, form in zip((a, b), stage.doubts_of(sides.above), forms, strict=True)
-    ]
-    if segment.is_point:
-        left, right = forms[0], c * g[0] * forms[1]
-        slack: Real = sizes[0] + c * abs(g[0]) * sizes[1]
-    else:
-        left, right = times_linear(forms[0], 1.0, 1.0), c * times_linear(forms[1], *g)
-        slack = _spread(sizes[0], (1.0, 1.0)) + c * _spread(sizes[1], g)
-    return keep(
-        weighted(a, stage.box, stage.degrees, left),
-        weighted(b, stage.box, stage.degrees, right),
-        stage.box,
-        np.tile(slack, stage.common_nodes),
+    a, b = (segment.powers(stage.degree)[: stage.named(side).degree + 1] for side in sides.both)
+    left_doubt, right_doubt = (
+        stage.doubt(side) @ np.abs(forms) for side, forms in zip(sides.both, (a, b), strict=True)
     )
-
-
-def _spread(doubt: Real, g: tuple[complex, complex]) -> Real:
-    return np.real(times_linear(doubt.astype(complex), abs(g[0]), abs(g[1])))
+    if not segment.is_point:
+        left_doubt, right_doubt = times_size(left_doubt, 1.0, 1.0), times_size(right_doubt, *g)
+        a, b = times_linear(a, 1.0, 1.0), times_linear(b, *g)
+    else:
+        b, right_doubt = g[0] * b, abs(g[0]) * right_doubt
+    if stage.is_large:
+        kept = keep(
+            weighted(stage.named(sides.above), stage.box, stage.degrees, a),
+            weighted(stage.named(sides.below), stage.box, stage.degrees, enough * b),
+            stage.box,
+            np.tile(left_doubt + enough * right_doubt, stage.common_nodes),
+        )
+        return enough if kept else inf
+    above, below = (stage.nodes(side).values for side in sides.both)
+    return _largest(np.abs(above @ a) + left_doubt, below @ np.real(b) - right_doubt)
 
 
 def _largest(left: Real, right: Real) -> float:
@@ -134,8 +118,8 @@ def relative_ratio(
     `g[k][l]` belongs to end k of the first segment and end l of the second.
     """
     forms = {
-        (name, i): form(getattr(stage, name), segment, stage.degree)
-        for name in (sides.above, sides.below)
+        (name, i): form(stage.nodes(name), segment, stage.degree)
+        for name in sides.both
         for i, segment in enumerate(segments)
     }
     left, left_loss = _product(forms[sides.above, 0], forms[sides.below, 1], stage)

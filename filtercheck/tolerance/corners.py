@@ -20,11 +20,8 @@ import numpy as np
 
 from filtercheck.network.ratio import Real
 from filtercheck.tolerance.box import Box, Common
+from filtercheck.tolerance.segment import binomials, powers
 from filtercheck.tolerance.terms import Terms
-
-# What is kept free for rounding, as a part of the sum of the terms' sizes: some hundred times
-# what the few hundred operations on the way to a coefficient can lose.
-ROUNDING = 1e-12
 
 Key = tuple[tuple[int, ...], int, tuple[int, ...]]  # own values left, power of s, of factors
 Table = dict[Key, Real]
@@ -39,7 +36,7 @@ class Nodes:
 
 
 def nodes(of: Terms, box: Box, degrees: tuple[int, ...], doubt: Real) -> Nodes:
-    """Return a polynomial at all nodes of a box; `doubt` is what is known to be left out.
+    """Return a polynomial at all nodes of a box, where `doubt` is how wrong it may be.
 
     Parameters
     ----------
@@ -59,7 +56,6 @@ def nodes(of: Terms, box: Box, degrees: tuple[int, ...], doubt: Real) -> Nodes:
         dense = np.moveaxis(
             np.tensordot(dense, bernstein(common, degree), axes=(axis, 0)), -1, axis
         )
-    doubt = doubt + ROUNDING * of.size(box.high)
     return Nodes(dense.reshape(2 ** len(own), -1, of.degree + 1), doubt)
 
 
@@ -108,13 +104,5 @@ def _folded(table: Table, low: float, high: float) -> Table:
 
 def bernstein(common: Common, degree: int) -> Real:
     """Return the Bernstein coefficients over the interval of u of 1, u, u^2, ... as rows."""
-    binomial = np.ones(1)
-    for _ in range(degree):
-        binomial = np.convolve(binomial, [1.0, 1.0])
-    rows = []
-    for k in range(degree + 1):
-        row = np.ones(1)
-        for factor in [(common.low, common.high)] * k + [(1.0, 1.0)] * (degree - k):
-            row = np.convolve(row, factor)
-        rows.append(row / binomial)
-    return np.array(rows)
+    forms = powers((common.low, common.high), (1.0, 1.0), degree)
+    return np.real(forms) / binomials(degree)

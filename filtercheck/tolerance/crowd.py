@@ -17,8 +17,9 @@ import numpy as np
 from numpy.typing import NDArray
 
 from filtercheck.network.ratio import Complex, Real
+from filtercheck.network.response import DECIBEL_PER_NEPER
 from filtercheck.tolerance.chain import Board, Chain
-from filtercheck.tolerance.limit import DECIBEL, Limit
+from filtercheck.tolerance.limit import Limit
 from filtercheck.tolerance.poles import poles, qualities
 
 BENT = 0.25  # neper by which ln|H|^2 may bend from one point of a grid to the next
@@ -167,7 +168,7 @@ class Screen:
     def _factor(self) -> Real:
         """One over the power that is allowed."""
         allowed = [self.limit.excess_allowed_db(self.chain.freq_hz(w)) for w in self.band]
-        return np.exp(-2.0 * np.array(allowed) / DECIBEL)
+        return np.exp(-2.0 * np.array(allowed) / DECIBEL_PER_NEPER)
 
     def _beside(self, gain: Real) -> NDArray[np.bool_]:
         """Return which frequencies are on the limit's side of each board's largest gain."""

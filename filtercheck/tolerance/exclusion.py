@@ -21,12 +21,11 @@ from math import cos, inf, pi, sin, sqrt, tan
 
 import numpy as np
 
-from filtercheck.network.ratio import Complex, Real
+from filtercheck.network.ratio import Complex
 from filtercheck.tolerance.box import widest
-from filtercheck.tolerance.corners import ROUNDING
 from filtercheck.tolerance.faces import keep, weighted
 from filtercheck.tolerance.poles import poles
-from filtercheck.tolerance.segment import Segment, powers, times_linear
+from filtercheck.tolerance.segment import Segment, powers, times_linear, times_size
 from filtercheck.tolerance.stage import Stage
 
 Ends = tuple[complex, complex]
@@ -46,6 +45,10 @@ class Path:
     def at(self, end: int) -> Path:
         """Return one end as a path of its own, that does not move."""
         return Path((self.x[end], self.x[end]), (self.y[end], self.y[end]))
+
+    def row(self, end: int, degree: int) -> Complex:
+        """Return Y^d, X Y^(d-1), ..., X^d at one end."""
+        return np.array([self.x[end] ** k * self.y[end] ** (degree - k) for k in range(degree + 1)])
 
 
 def ray(segment: Segment, angle: float) -> Path:
@@ -133,37 +136,17 @@ def _place(point: Path) -> complex:
 
 
 def _excluded(stage: Stage, path: Path) -> bool:
-    if stage.is_large:
-        return _excluded_by_faces(stage, path)
-    nodes = stage.denominators
-    degree = stage.terms[1].degree
-    ends = [nodes.values @ powers(path.at(i).x, path.at(i).y, degree).sum(axis=1) for i in (0, 1)]
-    g = tuple(_direction(values) for values in ends)
-    if path.x[0] == path.x[1] and path.y[0] == path.y[1]:
-        size = nodes.doubt @ np.abs(powers(path.x, path.y, degree)).sum(axis=1)
-        return bool((np.real(g[0] * ends[0]) > abs(g[0]) * size).all())
-    forms = powers(path.x, path.y, degree)
-    slack = np.real(
-        times_linear((nodes.doubt @ np.abs(forms)).astype(complex), abs(g[0]), abs(g[1]))
-    )
-    turned = np.real(times_linear(nodes.values @ forms, g[0], g[1]))
-    return bool((turned > slack).all())
-
-
-def _excluded_by_faces(stage: Stage, path: Path) -> bool:
-    """The same where there are too many corners to list; some boards say the direction."""
+    """Whether one direction shows it; where corners are too many to list, some boards say which."""
     of, box = stage.terms[1], stage.box
-    boards = of.at(box.ends(box.centre))
+    seen = of.at(box.ends(box.centre)) if stage.is_large else stage.denominators.values
+    g = [_direction(seen @ path.row(end, of.degree)) for end in (0, 1)]
     forms = powers(path.x, path.y, of.degree)
-    g = [
-        _direction(boards @ powers(path.at(i).x, path.at(i).y, of.degree).sum(axis=1))
-        for i in (0, 1)
-    ]
-    doubts = ROUNDING * of.size(box.high) + stage.doubts[1]
-    sizes = (doubts @ np.abs(forms)).astype(complex)
-    slack: Real = np.real(times_linear(sizes, abs(g[0]), abs(g[1])))
-    right = weighted(of, box, stage.degrees, times_linear(forms, g[0], g[1]))
-    return keep(None, right, box, np.tile(slack, stage.common_nodes))
+    turned = times_linear(forms, g[0], g[1])
+    slack = times_size(stage.doubt("denominators") @ np.abs(forms), g[0], g[1])
+    if stage.is_large:
+        right = weighted(of, box, stage.degrees, turned)
+        return keep(None, right, box, np.tile(slack, stage.common_nodes))
+    return bool((stage.denominators.values @ np.real(turned) > slack).all())
 
 
 def _direction(values: Complex) -> complex:
@@ -182,6 +165,6 @@ def _widest(stage: Stage, point: Path) -> int | None:
     """Return the coordinate along which the denominator changes most at a point; None where all
     are too narrow to halve."""
     box = stage.box
-    row = powers(point.x, point.y, stage.terms[1].degree).sum(axis=1)
+    row = point.row(0, stage.terms[1].degree)
     low, high = np.split(stage.terms[1].at(box.ends(box.centre)) @ row, 2)
     return widest(box, np.abs(high - low))

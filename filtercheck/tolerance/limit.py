@@ -3,11 +3,10 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from math import log
 
 import numpy as np
 
-DECIBEL = 20.0 / log(10.0)  # dB of a neper
+from filtercheck.network.ratio import Real
 
 Band = tuple[float, float]  # [Hz]
 Mask = tuple[tuple[float, float], ...]  # (frequency [Hz], level [dB]), rising in frequency
@@ -47,7 +46,7 @@ class Limit:
 
     def excess_allowed_db(self, freq_hz: float) -> float:
         """Return what sign * gain may be at most. [dB]"""
-        return self.sign * level_at(self.level_db, freq_hz)
+        return self.sign * float(levels_at(self.level_db, np.array([freq_hz]))[0])
 
 
 @dataclass(frozen=True)
@@ -79,9 +78,9 @@ def shifted(mask: Mask, by_db: float) -> Mask:
     return tuple((freq, level + by_db) for freq, level in mask)
 
 
-def level_at(mask: Mask, freq_hz: float) -> float:
-    """Return the level of a mask at a frequency of its span. [dB]"""
-    if len(mask) == 1:
-        return mask[0][1]
+def levels_at(mask: Mask, freq_hz: Real) -> Real:
+    """Return the levels of a mask at frequencies of its span, (F,). [dB]"""
     points, levels = np.array(mask).T
-    return float(np.interp(log(freq_hz), np.log(points), levels))
+    if len(mask) == 1:
+        return np.full(len(freq_hz), levels[0])
+    return np.asarray(np.interp(np.log(freq_hz), np.log(points), levels), dtype=float)

@@ -56,9 +56,8 @@ def prove(chain: Chain, limit: Limit, choices_hz: tuple[float, ...], budget: int
     if limit.reference is None:
         return _proof(chain, limit, choices_hz, budget)
     light = _proof(chain.relative.lightened, limit, choices_hz, budget)
-    if light.challenge is not None or light.gap_db <= 0.0 or light.gap_db > LIGHTNESS_DB:
-        return light
-    if not chain.relative.is_lighter:
+    by_lightness = 0.0 < light.gap_db <= LIGHTNESS_DB and chain.relative.is_lighter
+    if light.challenge is not None or not by_lightness:
         return light
     return _proof(chain.relative, limit, choices_hz, budget)
 
@@ -156,16 +155,12 @@ def _band_halves(piece: Piece) -> list[Piece]:
     where numbers do not lie close enough to halve any."""
     segment, reference = piece.segment, piece.reference
     if reference is not None:
-        changes = [piece.chain.change(*_ends(one)) for one in (segment, reference)]
+        changes = [piece.chain.change(one.low, one.high) for one in (segment, reference)]
         if changes[1] > changes[0] and reference.is_divisible:
             return [replace(piece, reference=half) for half in reference.halves()]
     if not segment.is_divisible:
         return []
     return [replace(piece, segment=half) for half in segment.halves()]
-
-
-def _ends(segment: Segment) -> tuple[float, float]:
-    return segment.low, segment.high
 
 
 def _point(segment: Segment) -> Segment:

@@ -100,6 +100,11 @@ def times_linear(forms: Complex, at_start: complex, at_end: complex) -> Complex:
     return grown
 
 
+def times_size(doubts: Real, at_start: complex, at_end: complex) -> Real:
+    """Return how wrong forms may be when `times_linear` has multiplied them, (J + 1,) from (J,)."""
+    return np.real(times_linear(doubts.astype(complex), abs(at_start), abs(at_end)))
+
+
 def largest_product(ends: list[Real]) -> float:
     """Return an upper bound of a product of functions that are linear in t, or in t and t', none
     negative: the largest of its Bernstein coefficients.
@@ -113,12 +118,13 @@ def largest_product(ends: list[Real]) -> float:
             for m, value in enumerate(row):
                 grown[k : k + product.shape[0], m : m + product.shape[1]] += value * product
         product = grown
-    rows, columns = (_binomials(count - 1) for count in product.shape)
+    rows, columns = (binomials(count - 1) for count in product.shape)
     return float((product / np.outer(rows, columns)).max())
 
 
 @lru_cache(maxsize=64)
-def _binomials(degree: int) -> Real:
+def binomials(degree: int) -> Real:
+    """Return the binomial coefficients of a degree."""
     row = np.ones(1)
     for _ in range(degree):
         row = np.convolve(row, [1.0, 1.0])

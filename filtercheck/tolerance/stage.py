@@ -13,6 +13,9 @@ from filtercheck.tolerance.box import Box
 from filtercheck.tolerance.corners import Nodes, common_degrees, nodes, true_corners
 from filtercheck.tolerance.terms import Terms, terms
 
+# What is kept free for rounding, as a part of the sum of the terms' sizes: some hundred times
+# what the few hundred operations on the way to a coefficient can lose.
+ROUNDING = 1e-12
 OVERHEAD = 200_000  # numbers that could be computed while a trial does everything else
 MINOR = 2e-5  # of the sum of the terms' sizes, what values taken as exact may do together
 MOST_LISTED = 14  # free values of a network whose corners are listed
@@ -46,10 +49,14 @@ class Stage:
         """Return the terms of the "numerators" or of the "denominators"."""
         return self.terms[0] if side == "numerators" else self.terms[1]
 
-    def doubts_of(self, above: str) -> tuple[Real, Real]:
-        """Return the doubts of the side that is above in a comparison, and of the other."""
-        top, bottom = self.doubts
-        return (top, bottom) if above == "numerators" else (bottom, top)
+    def nodes(self, side: str) -> Nodes:
+        """Return the "numerators" or the "denominators" at all nodes of the box."""
+        return self.numerators if side == "numerators" else self.denominators
+
+    def doubt(self, side: str) -> Real:
+        """Return how wrong the coefficients of the "numerators" or "denominators" may be."""
+        left_out = self.doubts[0 if side == "numerators" else 1]
+        return left_out + ROUNDING * self.named(side).size(self.box.high)
 
     @property
     def is_large(self) -> bool:
@@ -96,11 +103,11 @@ class Stage:
 
     @cached_property
     def numerators(self) -> Nodes:
-        return nodes(self.terms[0], self.box, self.degrees, self.doubts[0])
+        return nodes(self.terms[0], self.box, self.degrees, self.doubt("numerators"))
 
     @cached_property
     def denominators(self) -> Nodes:
-        return nodes(self.terms[1], self.box, self.degrees, self.doubts[1])
+        return nodes(self.terms[1], self.box, self.degrees, self.doubt("denominators"))
 
     @cached_property
     def true_corners(self) -> list[int]:

@@ -13,10 +13,11 @@ from math import exp, inf, log, log1p
 import numpy as np
 
 from filtercheck.network.ratio import Real
+from filtercheck.network.response import DECIBEL_PER_NEPER
 from filtercheck.tolerance.certificate import Sides, ratio, relative_ratio
 from filtercheck.tolerance.chain import Board, Chain
 from filtercheck.tolerance.climb import Aim
-from filtercheck.tolerance.limit import DECIBEL, Limit
+from filtercheck.tolerance.limit import Limit
 from filtercheck.tolerance.segment import Segment, largest_product
 from filtercheck.tolerance.stage import Stage
 
@@ -60,9 +61,9 @@ class Trial:
                 board = self.chain.worst(aim)
                 heights = self.chain.heights(aim, board)
                 slack = self._allowed(omega) - sum(heights)
-                if slack * DECIBEL < -CLEAR_DB:
-                    return Attempt(-slack * DECIBEL, board, work)
-                least = min(least, slack * DECIBEL)
+                if slack * DECIBEL_PER_NEPER < -CLEAR_DB:
+                    return Attempt(-slack * DECIBEL_PER_NEPER, board, work)
+                least = min(least, slack * DECIBEL_PER_NEPER)
                 worst[k, m] = board
                 shares[k, m] = [height + slack / len(heights) for height in heights]
         bulge = self._bulge(shares)
@@ -75,7 +76,7 @@ class Trial:
             }
             c = self._ratio(stage, g, enough)
             total += log(c) if 0.0 < c < inf else (inf if c else -inf)
-        return Attempt(total * DECIBEL, None, work, least)
+        return Attempt(total * DECIBEL_PER_NEPER, None, work, least)
 
     @property
     def ends(self) -> tuple[float, ...]:
@@ -91,7 +92,7 @@ class Trial:
 
     def _allowed(self, omega: float) -> float:
         """Return what sign * ln|gain| may be."""
-        return self.limit.excess_allowed_db(self.chain.freq_hz(omega)) / DECIBEL
+        return self.limit.excess_allowed_db(self.chain.freq_hz(omega)) / DECIBEL_PER_NEPER
 
     def _ratio(self, stage: Stage, g: dict[tuple[int, int], complex], enough: float) -> float:
         k, m = len(self.ends) - 1, len(self.others) - 1

@@ -86,6 +86,7 @@ class Sampled:
     wanted: Wanted
     variation: Variation
     output: str
+    nominal: Curve
     sampling: Sampling
     identity: str
     stable: bool
@@ -159,10 +160,9 @@ class Sampled:
 
     @cached_property
     def _tests(self) -> Sequence[Test]:
-        first = Curve(self._chain.response(tuple(points[0] for points in self._first)))
         claims = (
             claim
-            for index in range(len(list(self.wanted.findings(first))))
+            for index in range(len(list(self.wanted.findings(self.nominal))))
             for claim in self.wanted.claims(index, 0.0)
         )
         return [self._test(claim) for claim in claims]

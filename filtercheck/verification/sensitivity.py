@@ -8,9 +8,10 @@ import numpy as np
 
 from filtercheck.model.verdict import Finding
 from filtercheck.network.ratio import Real
+from filtercheck.network.response import DECIBEL_PER_NEPER
 from filtercheck.tolerance.chain import Board, Chain
 from filtercheck.tolerance.climb import Aim, heights
-from filtercheck.tolerance.limit import DECIBEL, Pull
+from filtercheck.tolerance.limit import Pull
 from filtercheck.tolerance.poles import sharpest
 from filtercheck.wiring.variation import Variation
 
@@ -49,7 +50,7 @@ def _slopes(chain: Chain, board: Board, terms: tuple[tuple[float, int], ...]) ->
     found = []
     for stage, point in zip(chain.stages, board, strict=True):
         steps = heights(stage, Aim(terms), _steps(point))
-        found.append(DECIBEL * (steps[: len(point)] - steps[len(point) :]) / (2.0 * STEP))
+        found.append(DECIBEL_PER_NEPER * (steps[: len(point)] - steps[len(point) :]) / (2.0 * STEP))
     return found
 
 
@@ -68,7 +69,7 @@ def _worth(
         return 1.0
     omega = chain.omega(finding.freq_hz)
     ends = [sum(chain.heights(Aim(((omega * f, 1),)), board)) for f in (1.0 + STEP, 1.0 - STEP)]
-    slope = abs(DECIBEL * (ends[0] - ends[1]) / (2.0 * STEP))
+    slope = abs(DECIBEL_PER_NEPER * (ends[0] - ends[1]) / (2.0 * STEP))
     return finding.value / finding.limit / slope if slope else 0.0
 
 

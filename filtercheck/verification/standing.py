@@ -54,7 +54,10 @@ def with_real_amplifiers(subject: Subject) -> Subject:
 def nominal(subject: Subject, whole: Response) -> Standing | None:
     """Return why a filter is not shown stable as fitted; None when it is."""
     fast = with_real_amplifiers(subject)
-    return _of(whole) or _of(responses(fast, wired(fast))[1])
+    found = _of(whole)
+    if found is not None or fast == subject:
+        return found
+    return _of(responses(fast, wired(fast))[1])
 
 
 def _of(whole: Response) -> Standing | None:

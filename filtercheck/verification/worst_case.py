@@ -20,11 +20,12 @@ import numpy as np
 from filtercheck.model.part import Part
 from filtercheck.model.verdict import Finding
 from filtercheck.network.curve import Band, Curve
+from filtercheck.network.response import DECIBEL_PER_NEPER
 from filtercheck.requirements.kind import Wanted
 from filtercheck.tolerance import pole_limits
 from filtercheck.tolerance.chain import Board, Chain
 from filtercheck.tolerance.climb import Aim
-from filtercheck.tolerance.limit import DECIBEL, Limit, Poles
+from filtercheck.tolerance.limit import Limit, Poles
 from filtercheck.tolerance.prover import prove
 from filtercheck.verification.sensitivity import sensitivities
 from filtercheck.wiring.variation import Variation
@@ -63,7 +64,7 @@ def findings(
     """
     chain = variation.chain(output)
     for index in range(len(list(wanted.findings(nominal)))):
-        yield _Question(wanted, index, variation, chain, output, identity).answer()
+        yield _Question(wanted, index, variation, chain, output, nominal, identity).answer()
 
 
 @dataclass(frozen=True, eq=False)
@@ -75,6 +76,7 @@ class _Question:
     variation: Variation
     chain: Chain
     output: str
+    nominal: Curve
     identity: str
 
     def answer(self) -> Finding:
@@ -156,7 +158,7 @@ class _Question:
         """Yield where to look, and what the aim may be there."""
         for freq_hz in self._places(limit.band_hz):
             omega = self.chain.omega(freq_hz)
-            allowed = limit.excess_allowed_db(freq_hz) / DECIBEL
+            allowed = limit.excess_allowed_db(freq_hz) / DECIBEL_PER_NEPER
             if limit.reference is None:
                 yield Aim(((omega, limit.sign),)), allowed
                 continue
@@ -167,23 +169,19 @@ class _Question:
 
     def _places(self, band_hz: Band) -> list[float]:
         """Return frequencies of a band: ends, turning points of the nominal response, some more."""
-        turns = [float(freq) for freq in self._nominal_curve.candidates_hz(band_hz)]
+        turns = [float(freq) for freq in self.nominal.candidates_hz(band_hz)]
         low, high = (min(max(end, self._span[0]), self._span[1]) for end in band_hz)
         between = np.geomspace(low, high, SEEDS).tolist() if low < high else []
         return sorted({*turns, *between})
 
     def _extremes(self, band_hz: Band) -> list[float]:
-        curve = self._nominal_curve
+        curve = self.nominal
         return sorted({curve.highest(band_hz).freq_hz, curve.lowest(band_hz).freq_hz})
-
-    @cached_property
-    def _nominal_curve(self) -> Curve:
-        return Curve(self.chain.response(self.chain.nominal))
 
     @cached_property
     def _span(self) -> Band:
         """Between what frequencies a response is interesting: a decade about its poles."""
-        sizes = np.abs(self._nominal_curve.response.poles) / (2.0 * np.pi)
+        sizes = np.abs(self.nominal.response.poles) / (2.0 * np.pi)
         return (float(sizes.min()) / 10.0, float(sizes.max()) * 10.0) if len(sizes) else (1.0, 1.0)
 
     def _refined(self, start: Found | Board) -> Found:
@@ -239,7 +237,7 @@ class _Question:
         """Return where the largest gain may be measured: where it is on this board and on that."""
         if limit.reference is None or limit.reference.every:
             return ()
-        curves = (self._nominal_curve, self._curve(self.variation.fitted(worst.board)))
+        curves = (self.nominal, self._curve(self.variation.fitted(worst.board)))
         return tuple(sorted({c.highest(limit.reference.band_hz).freq_hz for c in curves}))
 
 

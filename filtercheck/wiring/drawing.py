@@ -14,9 +14,9 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from filtercheck.model.part import Figure
 from filtercheck.network.ratio import Real
 from filtercheck.wiring.fitting import as_symbol
-from filtercheck.wiring.limits import Range, shared
 from filtercheck.wiring.variation import Variation
 
 SIGMAS = 3.0  # standard deviations to the end of a tolerance
@@ -40,23 +40,21 @@ class Drawing:
                 / unit
                 for slot, unit in zip(self.variation.slots[index], scale, strict=True)
             ]
-            for name, members in self.variation.networks[index].items():
-                part = members[0][1]
+            for name, network in self.variation.networks[index].items():
+                like = network.like
                 if name not in factors:
-                    within = shared(part) or Range(1.0, 1.0, 1.0)
-                    factors[name] = self._values(within, part.distribution, count)
-                inverse = part.quantity == "resistance"  # the symbol is the conductance
-                columns.append(1.0 / factors[name] if inverse else factors[name])
+                    factors[name] = self._values(network.factor, like.part.distribution, count)
+                columns.append(as_symbol(like.symbol.kind, factors[name]))
             points.append(np.array(columns).reshape(len(columns), count).T)
         return tuple(points)
 
-    def _values(self, within: Range, distribution: str, count: int) -> Real:
-        if within.low == within.high:
+    def _values(self, within: Figure, distribution: str, count: int) -> Real:
+        if within.min == within.max:
             return np.full(count, within.typical)
         if distribution == "uniform":
-            return self.random.uniform(within.low, within.high, count)
+            return self.random.uniform(within.min, within.max, count)
         part = self._normal(SORTED_OUT if distribution == "two-sided" else 0.0, count)
-        side = np.where(part < 0.0, within.typical - within.low, within.high - within.typical)
+        side = np.where(part < 0.0, within.typical - within.min, within.max - within.typical)
         return np.asarray(within.typical + part * side)
 
     def _normal(self, inner: float, count: int) -> Real:

@@ -43,15 +43,10 @@ def as_real_as(part: Part, element: Element) -> Element:
 
 def value(symbol: Symbol, part: Part) -> float:
     """Return the value of a symbol in SI units, from the part as fitted."""
-    return as_symbol(symbol.kind, number(part, symbol.kind))
-
-
-def number(part: Part, kind: str) -> float:
-    """Return what a part, or its figure that a kind of symbol stands for, is as fitted. [SI]"""
     if isinstance(part, Passive):
-        return part.value
-    figure = part.open_loop_gain if kind == "inverse gain" else part.gain_bandwidth
-    return figure.typical if figure else inf
+        return as_symbol(symbol.kind, part.value)
+    figure = part.open_loop_gain if symbol.kind == "inverse gain" else part.gain_bandwidth
+    return as_symbol(symbol.kind, figure.typical if figure else inf)
 
 
 def with_number(part: Part, kind: str, number: float) -> Part:

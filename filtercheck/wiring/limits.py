@@ -2,23 +2,16 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
+from math import inf
 
-from filtercheck.model.part import Part, Parts, Passive
+from filtercheck.model.part import Figure, Part, Parts, Passive
 from filtercheck.network.elements import Symbol
 from filtercheck.network.expansion import network_functions
-from filtercheck.wiring.fitting import number
 from filtercheck.wiring.groups import Group
 
-
-@dataclass(frozen=True)
-class Range:
-    """The lowest, the usual and the highest value of a part, or of an amplifier's figure. [SI]"""
-
-    low: float
-    typical: float
-    high: float
+FIGURES = {"inverse bandwidth": ".gain_bandwidth", "inverse gain": ".open_loop_gain"}
 
 
 @dataclass(frozen=True)
@@ -27,42 +20,71 @@ class Slot:
 
     symbol: Symbol
     part: Part
-    own: Range  # of its own value: where a network is tracked, without the shared factor
+    own: Figure  # its own value: where a network is tracked, without the shared factor
+
+    @property
+    def name(self) -> str:
+        """The part, or the amplifier's figure, such as `U1.gain_bandwidth`."""
+        return self.part.designator + FIGURES.get(self.symbol.kind, "")
+
+    @property
+    def power(self) -> int:
+        """1 or -1: the power of the part's value that the symbol is."""
+        return 1 if self.symbol.kind in ("capacitance", "inductance") else -1
 
 
-def stated(part: Part, kind: str) -> Range:
-    """Return the limits that a part's tolerance, or its figure, states."""
-    typical = number(part, kind)
+@dataclass(frozen=True)
+class Tracked:
+    """The parts of a matched network in one group."""
+
+    members: tuple[tuple[int, Slot], ...]  # with the place of each in the group
+    factor: Figure  # what all their values share
+
+    @property
+    def mask(self) -> int:
+        """The symbols, as a mask."""
+        return sum(1 << place for place, _ in self.members)
+
+    @property
+    def like(self) -> Slot:
+        """One of them; they are all alike."""
+        return self.members[0][1]
+
+
+def stated(part: Part, kind: str) -> Figure:
+    """Return the limits that a part's tolerance, or its figure, states. [SI]"""
     if isinstance(part, Passive):
-        if part.tolerance is None:
-            return Range(typical, typical, typical)
-        below, above = part.tolerance.below, part.tolerance.above
-        return Range(typical * (1.0 + below), typical, typical * (1.0 + above))
+        below = part.tolerance.below if part.tolerance else 0.0
+        above = part.tolerance.above if part.tolerance else 0.0
+        return Figure(part.value, part.value * (1.0 + below), part.value * (1.0 + above))
     figure = part.open_loop_gain if kind == "inverse gain" else part.gain_bandwidth
-    return Range(figure.min, typical, figure.max) if figure else Range(typical, typical, typical)
+    return figure or Figure(inf, inf, inf)
 
 
 def slots(group: Group, parts: Parts) -> Iterator[Slot]:
     """Yield the symbols of a group's network in their order."""
     for symbol in network_functions(group.network).denominator.symbols:
         part = parts[group.designator[symbol.element]]
-        if isinstance(part, Passive) and part.track is not None and shared(part):
+        own = stated(part, symbol.kind)
+        if isinstance(part, Passive) and part.track is not None and _shared(part):
             low, high = part.value * (1.0 - part.track), part.value * (1.0 + part.track)
-            yield Slot(symbol, part, Range(low, part.value, high))
-        else:
-            yield Slot(symbol, part, stated(part, symbol.kind))
+            own = Figure(part.value, low, high)
+        yield Slot(symbol, part, own)
 
 
-def networks(group: Group, parts: Parts) -> Mapping[str, list[tuple[int, Passive]]]:
-    """Return the matched networks of a group, with the symbols and the parts that track."""
-    found: dict[str, list[tuple[int, Passive]]] = {}
-    for index, slot in enumerate(slots(group, parts)):
-        if isinstance(slot.part, Passive) and slot.part.network and shared(slot.part):
-            found.setdefault(slot.part.network, []).append((index, slot.part))
-    return found
+def tracked(of: Sequence[Slot]) -> dict[str, Tracked]:
+    """Return the matched networks of a group whose parts track, by name."""
+    members: dict[str, list[tuple[int, Slot]]] = {}
+    factors: dict[str, Figure] = {}
+    for place, slot in enumerate(of):
+        factor = _shared(slot.part) if isinstance(slot.part, Passive) else None
+        if factor and isinstance(slot.part, Passive) and slot.part.network:
+            members.setdefault(slot.part.network, []).append((place, slot))
+            factors[slot.part.network] = factor
+    return {name: Tracked(tuple(found), factors[name]) for name, found in members.items()}
 
 
-def shared(part: Passive) -> Range | None:
+def _shared(part: Passive) -> Figure | None:
     """Return the limits of the factor that a tracking part shares with its network; None where
     it may stray as far on its own as its tolerance allows.
 
@@ -73,4 +95,4 @@ def shared(part: Passive) -> Range | None:
         return None
     low = (1.0 + part.tolerance.below) / (1.0 - part.track)
     high = (1.0 + part.tolerance.above) / (1.0 + part.track)
-    return Range(low, 1.0, high) if low < high else None
+    return Figure(1.0, low, high) if low < high else None

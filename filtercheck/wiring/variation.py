@@ -15,7 +15,8 @@ from math import floor, log10
 
 import numpy as np
 
-from filtercheck.model.part import Part, Parts, Passive
+from filtercheck.model.part import Figure, Part, Parts
+from filtercheck.network.elements import Symbol
 from filtercheck.network.expansion import network_functions
 from filtercheck.network.ratio import Real, units
 from filtercheck.tolerance.box import Box, Common
@@ -23,10 +24,9 @@ from filtercheck.tolerance.chain import Board, Chain
 from filtercheck.tolerance.stage import Stage
 from filtercheck.wiring.fitting import as_symbol, with_number
 from filtercheck.wiring.groups import Wiring
-from filtercheck.wiring.limits import Range, Slot, networks, shared, slots, stated
+from filtercheck.wiring.limits import Slot, Tracked, slots, stated, tracked
 
 DIGITS = 10  # of the values of a reported board
-FIGURES = {"inverse bandwidth": ".gain_bandwidth", "inverse gain": ".open_loop_gain"}
 
 
 @dataclass(frozen=True, eq=False)
@@ -77,16 +77,15 @@ class Variation:
         """Yield what may vary in a group: a part or an amplifier's figure by name, its symbol,
         and 1 or -1, the power of its value that the symbol is."""
         for i, slot in enumerate(self.slots[index]):
-            if slot.own.low < slot.own.high:
-                power = 1 if slot.symbol.kind in ("capacitance", "inductance") else -1
-                yield slot.part.designator + FIGURES.get(slot.symbol.kind, ""), i, power
+            if slot.own.min < slot.own.max:
+                yield slot.name, i, slot.power
 
     def reconciled(self, board: Board) -> Iterator[Board]:
         """Yield the board with one factor for each network whose parts are in several groups:
         that of one group after the other."""
         places: dict[str, list[tuple[int, int]]] = {}
-        for index, tracked in enumerate(self.networks[: len(board)]):
-            for k, name in enumerate(tracked):
+        for index, networks in enumerate(self.networks[: len(board)]):
+            for k, name in enumerate(networks):
                 places.setdefault(name, []).append((index, len(self.slots[index]) + k))
         spread = [found for found in places.values() if len(found) > 1]
         for source in range(max(map(len, spread), default=1)):
@@ -103,65 +102,53 @@ class Variation:
         return [tuple(slots(group, self.parts)) for group in self.wiring.groups]
 
     @cached_property
-    def networks(self) -> list[Mapping[str, list[tuple[int, Passive]]]]:
+    def networks(self) -> list[dict[str, Tracked]]:
         """The matched networks of every group, in the order of its common factors."""
-        return [networks(group, self.parts) for group in self.wiring.groups]
+        return [tracked(of) for of in self.slots]
 
     @cached_property
     def scales(self) -> list[Real]:
         """The units of the symbols of every group."""
-        return [np.array([unit[slot.symbol.kind] for slot in of]) for of, unit in self._units]
-
-    @cached_property
-    def _units(self) -> list[tuple[tuple[Slot, ...], Mapping[str, float]]]:
-        values = [
-            {s.symbol: as_symbol(s.symbol.kind, s.own.typical) for s in of} for of in self.slots
-        ]
-        return [
-            (of, units(known, self._omega0)) for of, known in zip(self.slots, values, strict=True)
-        ]
+        found = []
+        for of in self.slots:
+            unit = units(_typical(of), self._omega0)
+            found.append(np.array([unit[slot.symbol.kind] for slot in of]))
+        return found
 
     @cached_property
     def _omega0(self) -> float:
         first = next((of for of in self.slots if of), ())
-        known = {s.symbol: as_symbol(s.symbol.kind, s.own.typical) for s in first}
-        return units(known)["angular frequency"]
+        return units(_typical(first))["angular frequency"]
 
     @cached_property
     def _boxes(self) -> list[Box]:
         return [_box(*three) for three in zip(self.slots, self.scales, self.networks, strict=True)]
 
 
-def _box(
-    of: tuple[Slot, ...], scale: Real, tracked: Mapping[str, list[tuple[int, Passive]]]
-) -> Box:
-    ends = [
-        as_symbol(slot.symbol.kind, np.array([slot.own.low, slot.own.high, slot.own.typical]))
-        for slot in of
-    ]
-    low, high, nominal = np.array(ends).reshape(len(of), 3).T / scale
+def _typical(of: tuple[Slot, ...]) -> dict[Symbol, float]:
+    return {s.symbol: as_symbol(s.symbol.kind, s.own.typical) for s in of}
+
+
+def _box(of: tuple[Slot, ...], scale: Real, networks: Mapping[str, Tracked]) -> Box:
+    ends = [_interval(slot.symbol.kind, slot.own) for slot in of]
+    low, high = np.array(ends).reshape(len(of), 2).T / scale
+    nominal = np.array(list(_typical(of).values())) / scale
     commons = tuple(
-        _common(members[0][1], sum(1 << i for i, _ in members)) for members in tracked.values()
+        Common(one.mask, *_interval(one.like.symbol.kind, one.factor)) for one in networks.values()
     )
-    return Box(
-        np.minimum(low, high),
-        np.maximum(low, high),
-        np.array([*nominal, *np.ones(len(commons))]),
-        commons,
-    )
+    return Box(low, high, np.array([*nominal, *np.ones(len(commons))]), commons)
 
 
-def _common(part: Passive, mask: int) -> Common:
-    factor = shared(part) or Range(1.0, 1.0, 1.0)
-    if part.quantity == "resistance":  # the symbol is the conductance
-        return Common(mask, 1.0 / factor.high, 1.0 / factor.low)
-    return Common(mask, factor.low, factor.high)
+def _interval(kind: str, within: Figure) -> tuple[float, float]:
+    """Return the limits of a kind of symbol, the lower one first."""
+    ends = as_symbol(kind, within.min), as_symbol(kind, within.max)
+    return min(ends), max(ends)
 
 
-def _decimal(number: float, within: Range) -> float:
+def _decimal(number: float, within: Figure) -> float:
     """Return a number to `DIGITS` digits, not outside of its limits by more than a rounding."""
     near = float(f"{number:.{DIGITS}g}")
     step = 10.0 ** (floor(log10(number)) - DIGITS + 1)
-    if near < within.low * (1.0 - 1e-14):
+    if near < within.min * (1.0 - 1e-14):
         return float(f"{near + step:.{DIGITS}g}")
-    return float(f"{near - step:.{DIGITS}g}") if near > within.high * (1.0 + 1e-14) else near
+    return float(f"{near - step:.{DIGITS}g}") if near > within.max * (1.0 + 1e-14) else near

@@ -9,6 +9,7 @@ from numpy.typing import NDArray
 
 from filtercheck.model.part import OpAmp, Passive
 from filtercheck.model.verdict import Finding
+from filtercheck.network.curve import Curve
 from filtercheck.reading.filter_file import subject
 from filtercheck.requirements import KINDS
 from filtercheck.verification.sampled import Sampled
@@ -29,6 +30,18 @@ RLC = """\
 connect: {L1: [in, a], R1: [a, out], C1: [out, ground]}
 outputs: {out: out}
 """
+# Positive and negative feedback of one op-amp: it oscillates where R1 is larger than R2.
+FEEDBACK = """\
+connect: {R1: [in, p], R2: [out, p], R3: [out, m], R4: [m, ground],
+          U1: {plus: p, minus: m, out: out}}
+outputs: {out: out}
+parts:
+  R1: {resistance: RESISTANCE}
+  R2: {resistance: 10k}
+  R3: {resistance: 10k}
+  R4: {resistance: 10k}
+  U1: {amplifier: {gain_bandwidth: 1 MHz, open_loop_gain: ideal}}
+"""
 
 
 def sampled(text: str, identity: str = "f A", *, stable: bool = True) -> Sampled:
@@ -38,7 +51,8 @@ def sampled(text: str, identity: str = "f A", *, stable: bool = True) -> Sampled
     assert required.sampling is not None
     wanted = KINDS[required.kind].read(required)
     variation = Variation(wired(read), read.parts)
-    return Sampled(wanted, variation, required.output, required.sampling, identity, stable)
+    nominal = Curve(variation.wiring.response(required.output, read.parts))
+    return Sampled(wanted, variation, required.output, nominal, required.sampling, identity, stable)
 
 
 def finding(text: str, identity: str = "f A", *, stable: bool = True) -> Finding:

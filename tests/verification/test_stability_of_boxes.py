@@ -10,6 +10,7 @@ from __future__ import annotations
 from pathlib import Path
 
 import pytest
+from sampling import FEEDBACK, HEAD
 from state_variable import boards, gain_db, numbers, poles, stated, verdicts
 
 from filtercheck import pipeline
@@ -104,18 +105,9 @@ def test_a_box_that_touches_instability_at_a_corner_is_undecided(tmp_path: Path)
     # 10 kΩ = R2 the pole goes from the left half-plane to 0.
     file = tmp_path / "edge.filter.yaml"
     file.write_text(
-        """\
-format: filtercheck-filter/1
-filter: edge
-connect: {R1: [in, p], R2: [out, p], R3: [out, m], R4: [m, ground],
-          U1: {plus: p, minus: m, out: out}}
-outputs: {out: out}
-parts:
-  R1: {resistance: 8k, tolerance: 25 %}
-  R2: {resistance: 10k}
-  R3: {resistance: 10k}
-  R4: {resistance: 10k}
-  U1: {amplifier: {gain_bandwidth: 1 MHz, open_loop_gain: ideal}}
+        HEAD
+        + FEEDBACK.replace("RESISTANCE", "8k, tolerance: 25 %")
+        + """\
 requirements:
   A: {kind: gain, output: out, band: [0, 1], max: 300 dB}
 """,

@@ -8,7 +8,7 @@ import numpy as np
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
-from sampling import RLC, Real, finding, sampled, values
+from sampling import FEEDBACK, RLC, Real, finding, sampled, values
 from scipy.stats import binomtest
 
 from filtercheck.model.verdict import Outcome, decide
@@ -126,16 +126,8 @@ def test_a_share_that_oscillates_is_bad() -> None:
     # in the right half-plane where R1 > R2: 9.8 kΩ +- 4 % is from 9408 to 10192, of which
     # 192/784 lie above 10000. No gain comes near to 300 dB.
     found = finding(
-        """\
-connect: {R1: [in, p], R2: [out, p], R3: [out, m], R4: [m, ground],
-          U1: {plus: p, minus: m, out: out}}
-outputs: {out: out}
-parts:
-  R1: {resistance: 9k8, tolerance: 4 %}
-  R2: {resistance: 10k}
-  R3: {resistance: 10k}
-  R4: {resistance: 10k}
-  U1: {amplifier: {gain_bandwidth: 1 MHz, open_loop_gain: ideal}}
+        FEEDBACK.replace("RESISTANCE", "9k8, tolerance: 4 %")
+        + """\
 requirements:
   A: {kind: gain, output: out, band: [0, 1], max: 300 dB,
       verify: {yield: 70 %, confidence: 95 %, boards: 20000}}
